@@ -32,8 +32,16 @@ type BookBatch struct {
 	Name   string
 	Digest string // SHA-256 of the file, hexadecimal
 	Basis  Basis
-	// Superseded counts the batch's claims that a later batch values again.
-	Superseded int
+	// Superseded are the batch's claims that another batch of the book values
+	// later; they are counted here and stand in no column.
+	Superseded Superseded
+}
+
+// Superseded counts claims and sums their amounts in minor units.
+type Superseded struct {
+	Rows        int
+	Paid        int64
+	Outstanding int64
 }
 
 // NoTerm marks a claim without a deductible or without a limit.
