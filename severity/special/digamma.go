@@ -87,3 +87,12 @@ func polygammaTwo(x float64) (psi, tri float64) {
 	}
 	return pe + x*po, te + x*to
 }
+
+// LogMinusDigamma is ln a - ψ(a) > 0 for 0 < a < +Inf, NaN elsewhere, without
+// the cancellation of the difference at large a.
+func LogMinusDigamma(a float64) float64 {
+	if a >= asymptoticFrom && !math.IsInf(a, 1) {
+		return digammaGap(a)
+	}
+	return math.Log(a) - Digamma(a)
+}

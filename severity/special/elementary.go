@@ -4,6 +4,7 @@ import "math"
 
 const (
 	halfLogTwoPi = 0.918938533204672741780329736406 // ln(2π)/2
+	sqrtTwoPi    = 2.506628274631000502415765284811
 	eulerGamma   = 0.577215664901532860606512090082
 )
 
@@ -39,31 +40,24 @@ func expExcess(x float64) float64 {
 	return x2 * (even + x*odd)
 }
 
-// logDefect is x - ln(1+x) >= 0 for x > -1, without cancellation at 0: with
-// y = x/(2+x), ln(1+x) = 2 atanh y and x - 2y = xy.
-func logDefect(x float64) float64 {
-	if x > 1 || x < -0.5 {
-		return x - math.Log1p(x)
-	}
-	y := x / (2 + x)
-	y2 := y * y
-	var sum float64
+// atanhExcess is atanh(y)/y - 1 = y²/3 + y⁴/5 + ... for y2 = y² <= 1/9.
+func atanhExcess(y2 float64) float64 {
 	if y2 < 1.0/256 {
-		sum = 1.0/3 + y2*(1.0/5+y2*(1.0/7+y2*(1.0/9+y2*(1.0/11+y2*(1.0/13+y2*(1.0/15))))))
-	} else {
-		for k := 33; k >= 3; k -= 2 {
-			sum = sum*y2 + inverse[k]
-		}
+		return y2 * (1.0/3 + y2*(1.0/5+y2*(1.0/7+y2*(1.0/9+y2*(1.0/11+y2*(1.0/13+y2*(1.0/15)))))))
 	}
-	return y * (x - 2*y2*sum)
+	var sum float64
+	for k := 33; k >= 3; k -= 2 {
+		sum = (sum + inverse[k]) * y2
+	}
+	return sum
 }
 
-// logComplement is ln(1 - e^x) for x <= 0.
-func logComplement(x float64) float64 {
-	if x > -math.Ln2 {
-		return math.Log(-math.Expm1(x))
+// logComplement is ln(1 - p) for p = e^log, 0 <= p <= 1.
+func logComplement(log, p float64) float64 {
+	if log > -math.Ln2 {
+		return math.Log(-math.Expm1(log))
 	}
-	return math.Log1p(-math.Exp(x))
+	return math.Log1p(-p)
 }
 
 // inverse[n] is 1/n, n >= 1.

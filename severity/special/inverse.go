@@ -10,7 +10,7 @@ func InverseLower(a, logP float64) (lnZ float64) {
 	if !(logP <= 0) {
 		return math.NaN()
 	}
-	return invert(a, logP, logComplement(logP))
+	return invert(a, logP, logComplement(logP, math.Exp(logP)))
 }
 
 // InverseUpper is ln z with ln Q(a,z) = logQ, for 0 < a < +Inf and logQ <= 0:
@@ -19,7 +19,7 @@ func InverseUpper(a, logQ float64) (lnZ float64) {
 	if !(logQ <= 0) {
 		return math.NaN()
 	}
-	return invert(a, logComplement(logQ), logQ)
+	return invert(a, logComplement(logQ, math.Exp(logQ)), logQ)
 }
 
 // maxSteps bounds the iterations of invert; ten are common.
@@ -46,40 +46,35 @@ func invert(a, logP, logQ float64) float64 {
 	}
 	x := s.start(logP, logQ, tiny)
 	left, right := math.Inf(-1), math.Inf(1)
-	last := math.Inf(1)
 	for range maxSteps {
 		z := math.Exp(x)
-		var f, slope float64
+		var f, slope, bend float64 // f increases with x; bend is slope'/slope
 		if lower {
 			f = s.LogLower(z) - logP
+			slope = a * s.unit * math.Exp(s.logFront(z).hi-logP-f)
+			bend = a - z - slope
 		} else {
 			f = logQ - s.LogUpper(z)
-		}
-		if f == 0 {
-			return x
-		}
-		if f < 0 {
-			left = math.Max(left, x)
-		} else {
-			right = math.Min(right, x)
-		}
-		// slope = d/dx of the logarithm: z^a e^-z / Γ(a) over the probability
-		front := s.logFront(z, x) + math.Log(a)
-		if lower {
-			slope = math.Exp(front - (f + logP))
-		} else {
-			slope = math.Exp(front - (logQ - f))
-		}
-		// Halley: the curvature over the slope is a - z ∓ slope.
-		step := -f / slope
-		bend := a - z - slope
-		if !lower {
+			slope = a * s.unit * math.Exp(s.logFront(z).hi-logQ+f)
 			bend = a - z + slope
 		}
+		switch {
+		case f == 0:
+			return x
+		case f < 0:
+			left = math.Max(left, x)
+		default:
+			right = math.Min(right, x)
+		}
+		// Halley's step: cubic, so that a small one is the last.
+		step := -f / slope
 		if k := 1 + 0.5*step*bend; k > 0.5 && k < 2 {
 			step /= k
 		}
 		next := x + step
+		if math.Abs(step*bend) < 1e-6 && math.Abs(f) < 1e-6 && math.Abs(step) < 1e-6*(1+math.Abs(x)) || next == x {
+			return next
+		}
 		if !(next > left && next < right) {
 			switch {
 			case math.IsInf(left, -1):
@@ -90,11 +85,6 @@ func invert(a, logP, logQ float64) float64 {
 				next = left + (right-left)/2
 			}
 		}
-		size := math.Abs(next - x)
-		if next == x || size <= 1e-16*math.Abs(x) || size >= last && size < 1e-13*math.Abs(x) {
-			return next
-		}
-		last = size
 		x = next
 	}
 	return x
@@ -105,7 +95,7 @@ func (s *Shape) logGammaOnePlus() float64 {
 	if s.a < asymptoticFrom {
 		return s.logGamma1
 	}
-	return s.a*math.Log(s.a) - s.a - s.front
+	return (s.a+0.5)*math.Log(s.a) - s.a + halfLogTwoPi + s.stirling
 }
 
 // start is a first x = ln z: the small-argument law where P is small for the

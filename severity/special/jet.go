@@ -25,6 +25,7 @@ func nanJet() Jet {
 // lowerTail describes P(a,z) in the lower region.
 type lowerTail struct {
 	log    float64 // ln P
+	p      float64 // P, rounded once: e^log would lose digits when P is small
 	da     float64 // ∂ ln P/∂a = ln z - ψ(a) - E[ln(z/T) | T < z]
 	daa    float64 // Var[ln T | T < z] - ψ'(a)
 	hazard float64 // z ∂ ln P/∂z
@@ -35,6 +36,7 @@ type lowerTail struct {
 // upperTail describes Q(a,z) in the upper region.
 type upperTail struct {
 	log      float64 // ln Q
+	overA    float64 // Q/a, as P above
 	hazard   float64 // -z ∂ ln Q/∂z
 	mean     float64 // E[ln(T/z) | T > z]
 	variance float64 // Var[ln T | T > z]
@@ -45,8 +47,8 @@ type upperTail struct {
 func lowerRegion(a, z float64) bool { return z <= a || z < smallArgument }
 
 // smallArgument is the argument below which the lower series serve any shape:
-// there ln P still carries ln Q, which loses at most a factor 30 of precision.
-const smallArgument = 2
+// there ln P still carries ln Q, which loses at most a factor 10 of precision.
+const smallArgument = 1.5
 
 // LogUpper is ln Q(a,z), 0 < a < +Inf, z >= 0: 0 at z = 0, -Inf at z = +Inf;
 // NaN outside that domain.
@@ -94,11 +96,11 @@ func (s *Shape) LogUpper(z float64) float64 {
 	if log, _, done := s.ends(z); done {
 		return log
 	}
-	logZ := math.Log(z)
 	if lowerRegion(s.a, z) {
-		return logComplement(s.lowerValue(z, logZ))
+		return logComplement(s.lowerValue(z))
 	}
-	return s.upperValue(z, logZ)
+	log, _ := s.upperValue(z)
+	return log
 }
 
 // LogLower is ln P(a,z) of this shape; see the function LogLower.
@@ -106,11 +108,11 @@ func (s *Shape) LogLower(z float64) float64 {
 	if _, log, done := s.ends(z); done {
 		return log
 	}
-	logZ := math.Log(z)
 	if lowerRegion(s.a, z) {
-		return s.lowerValue(z, logZ)
+		log, _ := s.lowerValue(z)
+		return log
 	}
-	return logComplement(s.upperValue(z, logZ))
+	return logComplement(s.upperValue(z))
 }
 
 // ends answers at the ends of the domain and outside it.
@@ -134,7 +136,7 @@ func (s *Shape) LogUpperJet(z float64) Jet {
 	}
 	logZ := math.Log(z)
 	if !lowerRegion(s.a, z) {
-		return s.upperJet(z, logZ, s.upperTail(z, logZ))
+		return s.upperJet(z, logZ, s.upperTail(z))
 	}
 	if u, ok := s.smallShapeTail(z, logZ); ok {
 		return s.upperJet(z, logZ, u)
@@ -152,7 +154,7 @@ func (s *Shape) LogLowerJet(z float64) Jet {
 	if lowerRegion(s.a, z) {
 		return lowerJet(z, s.lowerTail(z, logZ))
 	}
-	return s.complementUpper(z, logZ, s.upperTail(z, logZ))
+	return s.complementUpper(z, logZ, s.upperTail(z))
 }
 
 func (s *Shape) upperJet(z, logZ float64, u upperTail) Jet {
@@ -181,23 +183,28 @@ func lowerJet(z float64, l lowerTail) Jet {
 
 // complementLower is the jet of ln Q from the lower tail.
 func (s *Shape) complementLower(z, logZ float64, l lowerTail) Jet {
-	p, q := math.Exp(l.log), -math.Expm1(l.log)
+	p, q := l.p, -math.Expm1(l.log)
 	ratio := p / q
 	da := -ratio * l.da
 	mean := da - s.logOverPsi(z, logZ)
 	hazard := l.hazard * ratio
+	excess := s.upperExcess(z, logZ, hazard)
 	h := hazard / z
-	log := math.Log1p(-p)
-	if p > 0.5 {
-		log = math.Log(q)
+	hz := h / z
+	if p < 1e-290 {
+		// the density may be in range where P is not
+		over := logDouble(z)
+		density := s.logFront(z).plus(-over.hi).plus(-over.lo)
+		h = s.unit * s.a * density.exp()
+		hz = s.unit * s.a * density.plus(-over.hi).plus(-over.lo).exp()
 	}
 	return Jet{
-		Log: log,
+		Log: logComplement(l.log, p),
 		DA:  da,
 		DZ:  -h,
 		DAA: -ratio * (l.daa + l.da*l.da/q),
 		DAZ: h * mean,
-		DZZ: -h / z * s.upperExcess(z, logZ, hazard),
+		DZZ: -hz * excess,
 	}
 }
 
@@ -214,32 +221,32 @@ func (s *Shape) upperExcess(z, logZ, hazard float64) float64 {
 	return b - z + hazard
 }
 
-// complementUpper is the jet of ln P from the upper tail.
+// complementUpper is the jet of ln P from the upper tail. The powers of 1/a in
+// the derivatives of ln Q, which would cancel at small shapes, are taken out:
+// with R = Q/a, P = 1 - aR.
 func (s *Shape) complementUpper(z, logZ float64, u upperTail) Jet {
 	a := s.a
-	q, p := math.Exp(u.log), -math.Expm1(u.log)
-	ratio := q / p
-	j := Jet{Log: math.Log1p(-q)}
-	if q > 0.5 {
-		j.Log = math.Log(p)
+	q, p := a*u.overA, -math.Expm1(u.log)
+	r := u.overA / p
+	dr := u.mean + s.logOverPsi1(z, logZ)
+	drr := u.variance - s.tri1
+	hazard := u.hazard * (q / p)
+	g := hazard / z
+	da := -r * (1 + a*dr)
+	j := Jet{
+		Log: logComplement(u.log, q),
+		DA:  da,
+		DZ:  g,
+		DAZ: g * (s.logOverPsi(z, logZ) - da),
+		DZZ: -g / z * (1 + (z - a) + hazard),
 	}
 	if a < 1 {
-		// Q = aR: the powers of 1/a, which would cancel, are taken out.
-		r := ratio / a
-		dr := u.mean + s.logOverPsi1(z, logZ)
-		drr := u.variance - s.tri1 + dr*dr
-		j.DA = -r * (1 + a*dr)
-		j.DAA = -r*(2*dr+a*drr) - j.DA*j.DA
+		j.DAA = -r*(2*dr+a*(drr+dr*dr)) - da*da
 	} else {
-		da := u.mean + s.logOverPsi(z, logZ)
-		j.DA = -ratio * da
-		j.DAA = -ratio * (u.variance - s.tri + da*da/p)
+		// the same in ∂ ln Q/∂a, whose square may overflow before Q vanishes
+		d := u.mean + s.logOverPsi(z, logZ)
+		j.DAA = -(q / p) * (u.variance - s.tri + d*d/p)
 	}
-	hazard := u.hazard * ratio
-	g := hazard / z
-	j.DZ = g
-	j.DAZ = g * (s.logOverPsi(z, logZ) - j.DA)
-	j.DZZ = -g / z * (1 + (z - a) + hazard)
 	return j
 }
 

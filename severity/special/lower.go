@@ -9,41 +9,48 @@ const quadratureFrom = 150
 // quadratureRatio: a lower series with z < quadratureRatio·a is short.
 const quadratureRatio = 0.4
 
-// lowerValue is ln P in the lower region.
-func (s *Shape) lowerValue(z, logZ float64) float64 {
-	front := s.logFront(z, logZ)
-	switch {
-	case s.a <= 1:
-		return front + z + math.Log1p(alternatingSum(s.a, z))
-	case s.a > quadratureFrom && z > quadratureRatio*s.a:
-		mass := lowerMass(s.a, z)
-		return front + math.Log(s.a*mass)
+// lowerValue is ln P and P in the lower region.
+func (s *Shape) lowerValue(z float64) (log, p float64) {
+	if s.a <= 1 {
+		front := s.logPower(z)
+		b := alternatingSum(s.a, z)
+		return front.hi + math.Log1p(b), front.exp() * (1 + b)
 	}
-	return front + math.Log(positiveSum(s.a, z))
+	front := s.logFront(z)
+	if s.a > quadratureFrom && z > quadratureRatio*s.a {
+		sum := s.unit * s.a * lowerMass(s.a, z)
+		return front.hi + math.Log(sum), front.exp() * sum
+	}
+	sum := s.unit * positiveSum(s.a, z)
+	return front.hi + math.Log(sum), front.exp() * sum
 }
 
 // lowerTail is P with its derivatives in the lower region.
 func (s *Shape) lowerTail(z, logZ float64) lowerTail {
 	a := s.a
-	front := s.logFront(z, logZ)
-	switch {
-	case a <= 1:
+	if a <= 1 {
+		front := s.logPower(z)
 		b, b1, b2 := alternatingSums(a, z)
 		r := 1 / (1 + b)
 		l1 := b1 * r
 		hazard := a * math.Exp(-z) * r
 		return lowerTail{
-			log:    a*logZ - s.logGamma1 + math.Log1p(b),
+			log:    front.hi + math.Log1p(b),
+			p:      front.exp() * (1 + b),
 			da:     s.logOverPsi1(z, logZ) + l1,
 			daa:    (b2*r - l1*l1) - s.tri1,
 			hazard: hazard,
 			back:   1/a - l1,
 			excess: z - a + hazard,
 		}
-	case a > quadratureFrom && z > quadratureRatio*a:
+	}
+	front := s.logFront(z)
+	if a > quadratureFrom && z > quadratureRatio*a {
 		m := lowerMoments(a, z)
+		sum := s.unit * a * m.mass
 		return lowerTail{
-			log:    front + math.Log(a*m.mass),
+			log:    front.hi + math.Log(sum),
+			p:      front.exp() * sum,
 			da:     s.logOverPsi(z, logZ) - m.mean,
 			daa:    m.variance - s.tri,
 			hazard: 1 / m.mass,
@@ -52,8 +59,10 @@ func (s *Shape) lowerTail(z, logZ float64) lowerTail {
 		}
 	}
 	m := positiveSums(a, z)
+	sum := s.unit * m.sum
 	return lowerTail{
-		log:    front + math.Log(m.sum),
+		log:    front.hi + math.Log(sum),
+		p:      front.exp() * sum,
 		da:     s.logOverPsi1(z, logZ) - m.mean,
 		daa:    m.curvature - s.tri1,
 		hazard: a / m.sum,

@@ -9,7 +9,8 @@ import "math"
 type Shape struct {
 	a         float64
 	logGamma1 float64 // ln Γ(1+a), below asymptoticFrom
-	front     float64 // -[ln(2πa)/2 + Stirling's correction], from asymptoticFrom on
+	stirling  float64 // Stirling's correction, from asymptoticFrom on
+	unit      float64 // 1/√(2πa) from asymptoticFrom on, 1 below
 	psi1      float64 // ψ(1+a)
 	gap       float64 // ln a - ψ(a), from asymptoticFrom on
 	tri       float64 // ψ'(a)
@@ -26,12 +27,13 @@ func NewShape(a float64) Shape {
 
 // valueShape prepares the values only.
 func valueShape(a float64) Shape {
-	s := Shape{a: a}
+	s := Shape{a: a, unit: 1}
 	switch {
 	case !(a > 0) || math.IsInf(a, 1):
 		s.a = math.NaN()
 	case a >= asymptoticFrom:
-		s.front = -(0.5*math.Log(a) + halfLogTwoPi + stirlingSeries(a))
+		s.stirling = stirlingSeries(a)
+		s.unit = 1 / (sqrtTwoPi * math.Sqrt(a))
 	default:
 		s.logGamma1 = logGamma1p(a)
 	}
@@ -66,19 +68,35 @@ func (s *Shape) logRatio(z float64) float64 {
 	return math.Log(r)
 }
 
-// logFront is ln[z^a e^-z / Γ(1+a)]; logZ is ln z. For large shapes the terms
-// are centred at a, where they would otherwise cancel.
-func (s *Shape) logFront(z, logZ float64) float64 {
+// logFront is ln[z^a e^-z / Γ(1+a)] - ln unit. For large shapes the terms are
+// centred at a, where they would otherwise cancel. The part that rounding takes away is
+// kept: a probability of e^-700 would lose two digits with it.
+func (s *Shape) logFront(z float64) double {
 	a := s.a
 	if a < asymptoticFrom {
-		return a*logZ - z - s.logGamma1
+		return s.logPower(z).plus(-z)
 	}
 	d := z - a
-	x := d / a
-	if x < -0.5 || x > 1 {
-		return a*s.logRatio(z) - d + s.front
+	if d < -0.5*a || d > a {
+		r := z / a
+		var l double
+		if r < 1e-290 || r > 1e290 {
+			l = double{hi: math.Log(z) - math.Log(a)}
+		} else {
+			l = logDouble(r).plus(math.FMA(-r, a, z) / z)
+		}
+		return l.times(a).plus(-z).plus(a).plus(-s.stirling)
 	}
-	return s.front - a*logDefect(x)
+	// With y = (z-a)/(z+a), z - a - a ln(z/a) = (z-a)y - 2a(y³/3 + y⁵/5 + ...).
+	sum := twoSum(z, a)
+	y := d / sum.hi
+	yLow := (math.FMA(-y, sum.hi, d) - y*sum.lo) / sum.hi
+	return twoProduct(-d, y).plus(-d * yLow).plus(2 * a * y * atanhExcess(y*y)).plus(-s.stirling)
+}
+
+// logPower is ln[z^a / Γ(1+a)], for shapes below asymptoticFrom.
+func (s *Shape) logPower(z float64) double {
+	return logDouble(z).times(s.a).plus(-s.logGamma1)
 }
 
 // logOverPsi is ln z - ψ(a).

@@ -2,7 +2,7 @@ package special
 
 import "math"
 
-// About a = 0 the upper tail is E1 and its neighbours. For z < 2, with
+// About a = 0 the upper tail is E1 and its neighbours. For z < 3/2, with
 // g = ln Γ(1+a)/a, w = g - ln z and E(s) = (e^s - 1)/s,
 //
 //	z^-a Γ(a,z) = ∫₀^∞ exp(av - z e^v) dv = w E(aw) - G,
@@ -11,7 +11,7 @@ import "math"
 // which is regular in a; at a = 0 it is DLMF 6.6.2.
 
 // smallShape is the shape below which the derivatives of ln Q come from that
-// integral when z < 2: near a = 0 they have powers of 1/a that P would lose.
+// integral when z < 3/2: near a = 0 they have powers of 1/a that P would lose.
 const smallShape = 0.25
 
 // smallShapeTail is Q in the lower region for small shapes, as long as Q is
@@ -22,11 +22,11 @@ func (s *Shape) smallShapeTail(z, logZ float64) (upperTail, bool) {
 		return upperTail{}, false
 	}
 	u := nearZeroTail(a, z, logZ)
-	u.log = a*logZ - s.logGamma1 + math.Log(a*u.log)
+	u.log = s.logPower(z).hi + math.Log(a*u.log)
 	return u, true
 }
 
-// nearZeroTail is the upper tail for |a| <= 1/2, z < 2; its log holds the
+// nearZeroTail is the upper tail for |a| <= 1/2, z < 3/2; its log holds the
 // integral itself.
 func nearZeroTail(a, z, logZ float64) upperTail {
 	g, g1, g2 := logGammaSlope(a)
@@ -63,7 +63,7 @@ func nearZeroTail(a, z, logZ float64) upperTail {
 	}
 }
 
-// upperIntegral is z^-a Γ(a,z) for |a| <= 1/2, z < 2; slope is ln Γ(1+a)/a.
+// upperIntegral is z^-a Γ(a,z) for |a| <= 1/2, z < 3/2; slope is ln Γ(1+a)/a.
 func upperIntegral(a, slope, z, logZ float64) float64 {
 	w := slope - logZ
 	f := w * exponentialMean(a*w)

@@ -2,39 +2,45 @@ package special
 
 import "math"
 
-// upperValue is ln Q in the upper region.
-func (s *Shape) upperValue(z, logZ float64) float64 {
+// upperValue is ln Q and Q in the upper region.
+func (s *Shape) upperValue(z float64) (log, q float64) {
 	a := s.a
 	d := z - a
 	spread := d * (d / z)
+	front := s.logFront(z)
+	var r float64 // Q over the front
 	if a > quadratureFrom && spread < fractionSpread {
-		return s.logFront(z, logZ) + math.Log(a*upperMass(a, z))
+		r = s.unit * a * upperMass(a, z)
+	} else {
+		r = s.unit * a / (d + 1 + (a-1)*fraction(a, z, fractionLevels(a, z, spread)))
 	}
-	first := fraction(a, z, fractionLevels(a, z, spread))
-	hazard := d + 1 + (a-1)*first
-	return s.logFront(z, logZ) + math.Log(a/hazard)
+	return front.hi + math.Log(r), front.exp() * r
 }
 
 // fractionSpread: where (z-a)²/z is larger the fraction is short at any shape.
 const fractionSpread = 16
 
 // upperTail is Q with its derivatives in the upper region.
-func (s *Shape) upperTail(z, logZ float64) upperTail {
+func (s *Shape) upperTail(z float64) upperTail {
 	a := s.a
 	d := z - a
 	spread := d * (d / z)
+	var u upperTail
 	if a > quadratureFrom && spread < fractionSpread {
 		m := upperMoments(a, z)
-		return upperTail{
-			log:      s.logFront(z, logZ) + math.Log(a*m.mass),
+		u = upperTail{
 			hazard:   1 / m.mass,
 			mean:     m.mean,
 			variance: m.variance,
 			excess:   (a - 1) * m.gap,
 		}
+	} else {
+		u = fractionTail(a, z, fractionLevels(a, z, spread))
 	}
-	u := fractionTail(a, z, fractionLevels(a, z, spread))
-	u.log = s.logFront(z, logZ) + math.Log(a/u.hazard)
+	front := s.logFront(z)
+	r := s.unit / u.hazard
+	u.overA = front.exp() * r
+	u.log = front.hi + math.Log(a*r)
 	return u
 }
 

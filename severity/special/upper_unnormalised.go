@@ -26,25 +26,23 @@ func LogUpperUnnormalisedJet(a, z float64) Jet {
 		return Jet{Log: math.Inf(-1), DA: math.Inf(1), DZ: -1}
 	}
 	logZ := math.Log(z)
-	if a > nearZeroReach && z < smallArgument || a > 1 {
+	var u upperTail
+	switch {
+	case a > 1 && !lowerRegion(a, z):
+		s := NewShape(a)
+		u = s.upperTail(z)
+		u.log += LogGamma(a)
+	case a > nearZeroReach && (a > 1 || z < 1):
 		s := NewShape(a)
 		j := s.LogUpperJet(z)
 		j.Log += LogGamma(a)
-		j.DA += s.psi1 - 1/a
+		j.DA += Digamma(a)
 		j.DAA += s.tri
-		if !lowerRegion(a, z) {
-			// the moments themselves, not differences from those of the whole
-			u := s.upperTail(z, logZ)
-			j.DA = u.mean + logZ
-			j.DAA = u.variance
-		}
 		return j
-	}
-	var u upperTail
-	if z < smallArgument && a > -fractionReach {
+	case a > -fractionReach && z < 1:
 		u = stepDownTail(a, z, logZ)
-	} else {
-		u = fractionTail(a, z, 12+int(96/(z+math.Max(0, -a))))
+	default:
+		u = fractionTail(a, z, 10+int(800/(8*z+math.Max(0, -a))))
 		u.log = a*logZ - z - math.Log(u.hazard)
 	}
 	h := u.hazard / z
