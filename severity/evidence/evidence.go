@@ -29,7 +29,7 @@ type QQPoint struct {
 type SurvivalPoint struct {
 	Loss      float64 `json:"loss"`
 	Empirical float64 `json:"empirical"`
-	Lower     float64 `json:"lower"` // 95% band from Greenwood on the log(-log) scale
+	Lower     float64 `json:"lower"` // band from Greenwood on the log(-log) scale
 	Upper     float64 `json:"upper"`
 	Fitted    float64 `json:"fitted"`
 }
