@@ -1,8 +1,8 @@
 package claims
 
 // Book holds the claims of a study in columns, each claim once, at its latest
-// valuation. Index i is one claim in every column. It is never changed after
-// it was built, so that it can be shared and cached.
+// valuation. Index i is one claim in every column. Its columns are never
+// changed after it was built, so that it can be shared and cached.
 type Book struct {
 	Currency string
 	Decimals int8 // of all amounts: minor units of the currency
@@ -24,6 +24,8 @@ type Book struct {
 
 	Businesses []string
 	Segments   []string
+
+	paidLosses, incurredLosses lossCache
 }
 
 // BookBatch is what a book needs to know of one of its batches.

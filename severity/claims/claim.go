@@ -27,6 +27,15 @@ type Claim struct {
 	Weight         float64        // > 0; 1 for a claim
 }
 
+// Incurred is paid plus outstanding; the sum is exact unless it leaves the 18
+// digits of an Amount, which ParseAmount admits for no amount of money.
+func (c *Claim) Incurred() Amount {
+	d := max(c.Paid.Decimals, c.Outstanding.Decimals)
+	paid, _ := c.Paid.MinorUnits(int(d))
+	outstanding, _ := c.Outstanding.MinorUnits(int(d))
+	return Amount{Units: paid + outstanding, Decimals: d}
+}
+
 // Status is the claim's state at the valuation date.
 type Status uint8
 
