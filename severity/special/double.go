@@ -50,3 +50,6 @@ func logDouble(x float64) double {
 	k := float64(e)
 	return twoSum(k*ln2Hi, math.Log(m)).plus(k * ln2Lo)
 }
+
+// add is hi + lo + x, rounded.
+func (d double) add(x float64) float64 { return (d.hi + x) + d.lo }

@@ -5,7 +5,10 @@ import "math"
 // InverseLower is ln z with ln P(a,z) = logP, for 0 < a < +Inf and
 // logP <= 0: -Inf at logP = -Inf, +Inf at 0; NaN elsewhere. The logarithm is
 // returned because z itself leaves the range of a float64 for small shapes.
-// For P above 1/2 a rounded logP says little; use InverseUpper there.
+// For P above 1/2 a rounded logP says little; use InverseUpper there. Measured
+// relative error of ln z: 4.2e-15 on testdata/special/quantile.csv
+// (TestQuantileTable); elsewhere that of one unit in the last place of logP,
+// ε |logP|/(z ∂ln P/∂z), where it is more (TestInverseOfTables).
 func InverseLower(a, logP float64) (lnZ float64) {
 	if !(logP <= 0) {
 		return math.NaN()
@@ -14,7 +17,7 @@ func InverseLower(a, logP float64) (lnZ float64) {
 }
 
 // InverseUpper is ln z with ln Q(a,z) = logQ, for 0 < a < +Inf and logQ <= 0:
-// +Inf at logQ = -Inf, -Inf at 0; NaN elsewhere.
+// +Inf at logQ = -Inf, -Inf at 0; NaN elsewhere. Accurate as InverseLower.
 func InverseUpper(a, logQ float64) (lnZ float64) {
 	if !(logQ <= 0) {
 		return math.NaN()

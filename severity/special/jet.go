@@ -51,14 +51,14 @@ func lowerRegion(a, z float64) bool { return z <= a || z < smallArgument }
 const smallArgument = 1.5
 
 // LogUpper is ln Q(a,z), 0 < a < +Inf, z >= 0: 0 at z = 0, -Inf at z = +Inf;
-// NaN outside that domain.
+// NaN outside that domain. Relative error: see the package.
 func LogUpper(a, z float64) float64 {
 	s := valueShape(a)
 	return s.LogUpper(z)
 }
 
 // LogLower is ln P(a,z), 0 < a < +Inf, z >= 0: -Inf at z = 0, 0 at z = +Inf;
-// NaN outside that domain.
+// NaN outside that domain. Relative error: see the package.
 func LogLower(a, z float64) float64 {
 	s := valueShape(a)
 	return s.LogLower(z)
@@ -72,7 +72,8 @@ func LogLower(a, z float64) float64 {
 //	DZ  = -h,  DAZ = h E[ln(T/z) | T > z],  DZZ = -(h/z)(a-1) E[1 - z/T | T > z].
 //
 // At z = 0 and z = +Inf it is the limit. A derivative above the range of a
-// float64, as DAA of a = 1e-200, is an infinity.
+// float64, as DAA of a = 1e-200, is an infinity. Relative error, of every
+// component: see the package.
 func LogUpperJet(a, z float64) Jet {
 	s := NewShape(a)
 	return s.LogUpperJet(z)

@@ -14,15 +14,15 @@ func (s *Shape) lowerValue(z float64) (log, p float64) {
 	if s.a <= 1 {
 		front := s.logPower(z)
 		b := alternatingSum(s.a, z)
-		return front.hi + math.Log1p(b), front.exp() * (1 + b)
+		return front.add(math.Log1p(b)), front.exp() * (1 + b)
 	}
 	front := s.logFront(z)
 	if s.a > quadratureFrom && z > quadratureRatio*s.a {
 		sum := s.unit * s.a * lowerMass(s.a, z)
-		return front.hi + math.Log(sum), front.exp() * sum
+		return front.add(math.Log(sum)), front.exp() * sum
 	}
 	sum := s.unit * positiveSum(s.a, z)
-	return front.hi + math.Log(sum), front.exp() * sum
+	return front.add(math.Log(sum)), front.exp() * sum
 }
 
 // lowerTail is P with its derivatives in the lower region.
@@ -35,7 +35,7 @@ func (s *Shape) lowerTail(z, logZ float64) lowerTail {
 		l1 := b1 * r
 		hazard := a * math.Exp(-z) * r
 		return lowerTail{
-			log:    front.hi + math.Log1p(b),
+			log:    front.add(math.Log1p(b)),
 			p:      front.exp() * (1 + b),
 			da:     s.logOverPsi1(z, logZ) + l1,
 			daa:    (b2*r - l1*l1) - s.tri1,
@@ -49,7 +49,7 @@ func (s *Shape) lowerTail(z, logZ float64) lowerTail {
 		m := lowerMoments(a, z)
 		sum := s.unit * a * m.mass
 		return lowerTail{
-			log:    front.hi + math.Log(sum),
+			log:    front.add(math.Log(sum)),
 			p:      front.exp() * sum,
 			da:     s.logOverPsi(z, logZ) - m.mean,
 			daa:    m.variance - s.tri,
@@ -61,7 +61,7 @@ func (s *Shape) lowerTail(z, logZ float64) lowerTail {
 	m := positiveSums(a, z)
 	sum := s.unit * m.sum
 	return lowerTail{
-		log:    front.hi + math.Log(sum),
+		log:    front.add(math.Log(sum)),
 		p:      front.exp() * sum,
 		da:     s.logOverPsi1(z, logZ) - m.mean,
 		daa:    m.curvature - s.tri1,

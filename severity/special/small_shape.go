@@ -22,7 +22,7 @@ func (s *Shape) smallShapeTail(z, logZ float64) (upperTail, bool) {
 		return upperTail{}, false
 	}
 	u := nearZeroTail(a, z, logZ)
-	u.log = s.logPower(z).hi + math.Log(a*u.log)
+	u.log = s.logPower(z).add(math.Log(a * u.log))
 	return u, true
 }
 

@@ -14,7 +14,7 @@ func (s *Shape) upperValue(z float64) (log, q float64) {
 	} else {
 		r = s.unit * a / (d + 1 + (a-1)*fraction(a, z, fractionLevels(a, z, spread)))
 	}
-	return front.hi + math.Log(r), front.exp() * r
+	return front.add(math.Log(r)), front.exp() * r
 }
 
 // fractionSpread: where (z-a)²/z is larger the fraction is short at any shape.
@@ -40,7 +40,7 @@ func (s *Shape) upperTail(z float64) upperTail {
 	front := s.logFront(z)
 	r := s.unit / u.hazard
 	u.overA = front.exp() * r
-	u.log = front.hi + math.Log(a*r)
+	u.log = front.add(math.Log(a * r))
 	return u
 }
 

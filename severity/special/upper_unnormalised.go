@@ -4,7 +4,9 @@ import "math"
 
 // LogUpperUnnormalised is ln Γ(a,z), the incomplete gamma function itself, for
 // any finite a, negative and zero included, and 0 < z <= +Inf (-Inf at +Inf);
-// NaN elsewhere. For a > 0 it is ln Q(a,z) + ln Γ(a). DLMF 8.2.2.
+// NaN elsewhere. For a > 0 it is ln Q(a,z) + ln Γ(a). DLMF 8.2.2. Measured
+// relative error 2.7e-14, near its zeros that of one unit in the last place of z
+// (TestUnnormalisedTable, testdata/special/negative.csv).
 func LogUpperUnnormalised(a, z float64) float64 {
 	return LogUpperUnnormalisedJet(a, z).Log
 }
@@ -17,7 +19,8 @@ func LogUpperUnnormalised(a, z float64) float64 {
 //	DAZ = h E[ln(T/z)],  DZZ = -(h/z)(a-1) E[1 - z/T].
 //
 // At a = 0 it belongs to the density t^-1 e^-t beyond z: the boundary of the
-// gamma family as the shape falls to zero above a deductible.
+// gamma family as the shape falls to zero above a deductible. Measured relative
+// error: 3e-14, and 1.8e-13 of DAA at -10 < a < 0 about z = 1.
 func LogUpperUnnormalisedJet(a, z float64) Jet {
 	switch {
 	case math.IsNaN(a) || math.IsInf(a, 0) || !(z > 0):
@@ -57,7 +60,8 @@ func LogUpperUnnormalisedJet(a, z float64) Jet {
 }
 
 // LogExponentialIntegral is ln E1(z) = ln Γ(0,z) for 0 < z <= +Inf, NaN
-// elsewhere. DLMF 6.2.1, 8.4.4.
+// elsewhere. DLMF 6.2.1, 8.4.4. Measured relative error 2.2e-15
+// (TestUnnormalisedTable).
 func LogExponentialIntegral(z float64) float64 { return LogUpperUnnormalised(0, z) }
 
 // nearZeroReach bounds |a| for nearZeroTail.
