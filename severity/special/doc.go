@@ -50,9 +50,9 @@
 // # Cost
 //
 // Nanoseconds a call on one core of a shared virtual machine (AMD EPYC), by the
-// benchmarks of this package: a jet of ln Q 230 to 500 for shapes up to 150 and
-// 0.9 to 1.2 µs in the quadrature; less 70 to 110 when a prepared Shape is used;
-// ln Q alone 110 to 370, and 0.7 to 0.9 µs. gonum's mathext.GammaIncRegComp, the
-// value without derivatives and not in logarithms, takes 90 to 320, 4 µs at
-// a = 0.1, z = 0.05, and 0.2 µs in the transition of large shapes.
+// benchmarks of this package: a jet of ln Q 230 to 480 for shapes up to 150 and
+// 770 to 810 in the quadrature, less 60 to 90 where a prepared Shape is shared;
+// ln Q alone 100 to 370, and 570 to 610 in the quadrature. gonum's
+// mathext.GammaIncRegComp, the value without derivatives and not in logarithms,
+// takes 70 to 210 for the same arguments and 3,200 at a = 0.1, z = 0.05.
 package special
