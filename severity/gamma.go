@@ -59,22 +59,7 @@ func logMass(a, z float64) float64 {
 	if a < 8 {
 		return a*math.Log(z) - z - special.LogGamma(a)
 	}
-	return 0.5*math.Log(a/(2*math.Pi)) - special.StirlingCorrection(a) - a*logDefect((z-a)/a)
-}
-
-// logDefect is x - ln(1+x) for x > -1. Near zero it sums the series of
-// x - 2 atanh(x/(2+x)), in which nothing cancels.
-func logDefect(x float64) float64 {
-	if x > 0.5 || x < -0.4 {
-		return x - math.Log1p(x)
-	}
-	y := x / (2 + x)
-	y2 := y * y
-	sum := 0.0
-	for k := 27.0; k >= 3; k -= 2 {
-		sum = sum*y2 + 1/k
-	}
-	return y * (x - 2*y2*sum)
+	return 0.5*math.Log(a/(2*math.Pi)) - special.StirlingCorrection(a) - a*special.LogDefect((z-a)/a)
 }
 
 // LogSurvival is ln S(x), the log probability of a loss above x; 0 for x <= 0

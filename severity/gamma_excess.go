@@ -86,10 +86,10 @@ func (k kernel) change(from, step float64) float64 {
 }
 
 // panel is the longest step from a point over which a Gauss rule sees a tame
-// integrand: ln g changes by about 8 at most and e^s by a small factor.
+// integrand: ln g + 2s, as in second moments, changes by about 8 at most.
 func (k kernel) panel(from, longest float64) float64 {
 	z := k.c * math.Exp(from)
-	slope := math.Abs(k.a - z)
+	slope := math.Abs(k.a-z) + 2
 	return math.Min(longest, 16/(slope+math.Sqrt(slope*slope+16*z)))
 }
 
@@ -135,7 +135,7 @@ func (k kernel) beyond(top float64) (m moments) {
 func (k kernel) walk(top, length float64, add func(mass, offset float64)) {
 	direction, longest := 1.0, 1.0
 	if length < 0 {
-		direction, longest = -1, 2.5
+		direction, longest = -1, 4
 		length = -length
 	}
 	at, height := 0.0, 0.0 // distance from top; ln g there over g(top)

@@ -55,8 +55,10 @@ func (g Gamma) TailValueAtRisk(p float64) float64 {
 // gradients are quadratures of positive terms (see excess), so that neither
 // thin layers nor attachments far in the tail lose digits.
 //
-// Largest relative error over the 26 cases of testdata/layers/layers.json
-// 0.0e-00 and over those of testdata/layers/extreme.csv 0.0e-00.
+// Largest relative error of a value: 3e-13 over the 26 cases of
+// testdata/layers/layers.json, 4e-13 over the 26 of testdata/layers/extreme.csv
+// (shapes 1e-4 to 1e4, attachments exceeded with probability 1e-280, layers of
+// a part in 1e11 of their attachment); of a gradient, over the latter, 4e-12.
 func (g Gamma) LayerFigures(attachment, limit float64) LayerFigures {
 	c := g.cut(attachment, limit)
 	if c == nil {
