@@ -202,3 +202,16 @@ var powersOfTen = func() (p [23]float64) {
 	}
 	return p
 }()
+
+// ParseTotal reads what Total.String writes.
+func ParseTotal(text string) (*Total, error) {
+	whole, decimals := text, 0
+	if i := strings.IndexByte(text, '.'); i >= 0 {
+		whole, decimals = text[:i]+text[i+1:], len(text)-i-1
+	}
+	t := &Total{decimals: decimals}
+	if _, ok := t.units.SetString(whole, 10); !ok {
+		return nil, fmt.Errorf("total %q: want a decimal number such as 1234.50", text)
+	}
+	return t, nil
+}

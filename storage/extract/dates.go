@@ -1,0 +1,117 @@
+package extract
+
+import (
+	"fmt"
+	"strconv"
+
+	"spillway/severity/claims"
+)
+
+// dateParts are the three numbers of a date as written.
+type dateParts struct {
+	a, b, c   int
+	yearFirst bool
+}
+
+// splitDate takes a date apart; ok is false for a cell that is no date in any
+// accepted form. A time of day behind the date is left out.
+func splitDate(cell []byte) (p dateParts, ok bool) {
+	for i, c := range cell {
+		if (c == ' ' || c == 'T') && i >= 8 {
+			cell = cell[:i]
+			break
+		}
+	}
+	if len(cell) == 8 && digitsOnly(cell) {
+		return dateParts{atoi(cell[:4]), atoi(cell[4:6]), atoi(cell[6:]), true}, true
+	}
+	var parts [3][]byte
+	n, start := 0, 0
+	var separator byte
+	for i := 0; i <= len(cell); i++ {
+		if i < len(cell) && cell[i] >= '0' && cell[i] <= '9' {
+			continue
+		}
+		if i < len(cell) {
+			c := cell[i]
+			if c != '-' && c != '/' && c != '.' || separator != 0 && c != separator {
+				return p, false
+			}
+			separator = c
+		}
+		if n == 3 || i == start || i-start > 4 {
+			return p, false
+		}
+		parts[n] = cell[start:i]
+		n++
+		start = i + 1
+	}
+	if n != 3 {
+		return p, false
+	}
+	switch {
+	case len(parts[0]) == 4 && len(parts[1]) <= 2 && len(parts[2]) <= 2:
+		return dateParts{atoi(parts[0]), atoi(parts[1]), atoi(parts[2]), true}, true
+	case len(parts[2]) == 4 && len(parts[0]) <= 2 && len(parts[1]) <= 2:
+		return dateParts{atoi(parts[0]), atoi(parts[1]), atoi(parts[2]), false}, true
+	}
+	return p, false
+}
+
+func digitsOnly(b []byte) bool {
+	for _, c := range b {
+		if c < '0' || c > '9' {
+			return false
+		}
+	}
+	return len(b) > 0
+}
+
+func atoi(b []byte) int {
+	n := 0
+	for _, c := range b {
+		n = n*10 + int(c-'0')
+	}
+	return n
+}
+
+const acceptedDates = "accepted are 2025-06-30, 20250630 and, once their order is decided, 30/06/2025 or 06/30/2025 with / . or - and a year of four digits"
+
+// readDate turns a trimmed, non-empty cell into a date.
+func readDate(cell []byte, f Format) (claims.Date, error) {
+	if f.Kind == Workbook {
+		if serial, err := strconv.ParseFloat(string(cell), 64); err == nil {
+			return fromSerial(serial)
+		}
+	}
+	p, ok := splitDate(cell)
+	switch {
+	case !ok:
+		return 0, fmt.Errorf("no date; %s", acceptedDates)
+	case p.yearFirst:
+		return dateOf(p.a, p.b, p.c)
+	case f.DateOrder == DayFirst:
+		return dateOf(p.c, p.b, p.a)
+	case f.DateOrder == MonthFirst:
+		return dateOf(p.c, p.a, p.b)
+	}
+	return 0, fmt.Errorf("day or month may come first and it is not decided which; %s", acceptedDates)
+}
+
+func dateOf(year, month, day int) (claims.Date, error) {
+	d, err := claims.NewDate(year, month, day)
+	if err != nil {
+		return 0, fmt.Errorf("%w; %s", err, acceptedDates)
+	}
+	return d, nil
+}
+
+// fromSerial reads the day number of a workbook, 1900 system: 61 is
+// 1900-03-01; earlier numbers are off by the day that never was, and refused.
+func fromSerial(serial float64) (claims.Date, error) {
+	if !(serial >= 61 && serial < 2958466) {
+		return 0, fmt.Errorf("a day number outside 1900-03-01 to 9999-12-31; %s", acceptedDates)
+	}
+	first, _ := claims.NewDate(1900, 3, 1)
+	return first + claims.Date(int(serial)-61), nil
+}

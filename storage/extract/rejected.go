@@ -1,0 +1,75 @@
+package extract
+
+import (
+	"encoding/csv"
+	"io"
+	"strconv"
+	"strings"
+)
+
+// WriteRejected reads the rest of a file and writes its rejected rows as CSV:
+// line number, reasons, then the cells as they came, guarded.
+func WriteRejected(w io.Writer, r *Reader) error {
+	out := csv.NewWriter(w)
+	if err := WriteRejectedHeader(out, r.Header()); err != nil {
+		return err
+	}
+	for r.Next() {
+		if row := r.Row(); row.Rejected {
+			if err := WriteRejectedRow(out, row.Line, Reasons(row.Findings), row.Cells()); err != nil {
+				return err
+			}
+		}
+	}
+	if err := r.Err(); err != nil {
+		return err
+	}
+	out.Flush()
+	return out.Error()
+}
+
+// WriteRejectedHeader writes the header of a file of rejected rows.
+func WriteRejectedHeader(out *csv.Writer, header []string) error {
+	return out.Write(append([]string{"line", "reasons"}, guardAll(header)...))
+}
+
+// WriteRejectedRow writes one rejected row.
+func WriteRejectedRow(out *csv.Writer, line int, reasons string, cells []string) error {
+	return out.Write(append([]string{strconv.Itoa(line), Guard(reasons)}, guardAll(cells)...))
+}
+
+// Reasons joins the findings that block a row.
+func Reasons(findings []Finding) string {
+	var reasons []string
+	for _, f := range findings {
+		if f.Effect == Blocks {
+			reasons = append(reasons, string(f.Rule)+" ("+f.Column+"): "+f.Message)
+		}
+	}
+	return strings.Join(reasons, "; ")
+}
+
+// Guard keeps a spreadsheet from running a text as a formula: it is prefixed
+// with ' when it begins with = + - @ tab or carriage return and is no number.
+func Guard(text string) string {
+	if text == "" {
+		return text
+	}
+	switch text[0] {
+	case '=', '@', '\t', '\r':
+		return "'" + text
+	case '+', '-':
+		if _, err := strconv.ParseFloat(text, 64); err != nil {
+			return "'" + text
+		}
+	}
+	return text
+}
+
+func guardAll(texts []string) []string {
+	guarded := make([]string, len(texts))
+	for i, t := range texts {
+		guarded[i] = Guard(t)
+	}
+	return guarded
+}
