@@ -12,12 +12,16 @@ import (
 	"os/signal"
 	"syscall"
 
+	"spillway/storage/extract"
+
 	"github.com/alecthomas/kong"
 )
 
 // commands are the words after the program's name, one file each.
 type commands struct {
+	Fit     fitCommand     `cmd:"" help:"Fit a severity curve to a claim extract."`
 	Layers  layersCommand  `cmd:"" help:"Price layers and quantiles of a given curve."`
+	Check   checkCommand   `cmd:"" help:"Check a claim extract and list what was found."`
 	Version versionCommand `cmd:"" help:"Print the program's version."`
 }
 
@@ -48,6 +52,7 @@ func run(ctx context.Context, args []string) int {
 		kong.Description(description),
 		kong.BindTo(ctx, (*context.Context)(nil)),
 		kong.Bind(io),
+		kong.Vars{"fields": join(extract.Fields)},
 	)
 	if err != nil {
 		return report(io, err)
