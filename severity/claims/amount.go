@@ -12,7 +12,7 @@ import (
 // taken place, so sums of amounts are exact.
 type Amount struct {
 	Units    int64
-	Decimals int8 // 0 to 40
+	Decimals int16 // 0 to 360
 }
 
 // ParseAmount reads a plain decimal number, optionally signed and optionally
@@ -23,8 +23,8 @@ func ParseAmount(text string) (Amount, error) {
 	exponent := 0
 	if hasExponent {
 		e, err := strconv.Atoi(exponentText)
-		if err != nil || e < -40 || e > 40 {
-			return Amount{}, fmt.Errorf("amount %q: the exponent must lie between -40 and 40", text)
+		if err != nil || e < -340 || e > 40 {
+			return Amount{}, fmt.Errorf("amount %q: the exponent must lie between -340 and 40", text)
 		}
 		exponent = e
 	}
@@ -69,13 +69,13 @@ func ParseAmount(text string) (Amount, error) {
 		units /= 10
 		decimals--
 	}
-	if decimals > 60 {
-		return Amount{}, fmt.Errorf("amount %q: more than 60 decimals", text)
+	if decimals > 360 {
+		return Amount{}, fmt.Errorf("amount %q: more than 360 decimals", text)
 	}
 	if negative {
 		units = -units
 	}
-	return Amount{units, int8(decimals)}, nil
+	return Amount{units, int16(decimals)}, nil
 }
 
 // MinorUnits is the amount as a whole number of 10^-decimals, and whether it
@@ -131,7 +131,7 @@ type Total struct {
 	units    big.Int // of 10^-decimals
 	decimals int
 	fast     int64 // pending sum of amounts with fastDecimals decimals
-	fastDec  int8
+	fastDec  int16
 }
 
 // Add adds one amount.

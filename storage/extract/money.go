@@ -64,10 +64,10 @@ func (r *amountReader) read(cell []byte) (a claims.Amount, scientific bool, err 
 			}
 			r.scratch = append(r.scratch, '.')
 			groups = false
-			for _, d := range body[i:] {
+			for j, d := range body[i:] {
 				if d < '0' || d > '9' {
 					if (d == 'e' || d == 'E') && digits > 0 {
-						return r.scientific(append(r.scratch, body[i:]...))
+						return r.scientific(append(r.scratch, body[i+j:]...))
 					}
 					return a, false, errNoNumber
 				}
@@ -128,7 +128,7 @@ func plain(cell []byte, decimal byte) (claims.Amount, bool) {
 		units /= 10
 		decimals--
 	}
-	return claims.Amount{Units: units, Decimals: int8(decimals)}, true
+	return claims.Amount{Units: units, Decimals: int16(decimals)}, true
 }
 
 // unsigned strips signs, brackets and currency signs.
