@@ -85,7 +85,7 @@ func newCheckReport(read *extract.Report) checkReport {
 		Observed:  observed{read.Uncensored, read.Censored},
 		FirstLoss: read.FirstLoss, LastLoss: read.LastLoss,
 		Groups:   []ruleCount{},
-		Findings: byLine(read),
+		Findings: byLine(read, extract.FindingsKept),
 		Repairs:  append([]extract.Repair{}, read.Repairs...),
 	}
 	for _, t := range read.Totals {

@@ -66,7 +66,7 @@ func chooseColumns(header []string, asked, guessed extract.ColumnMap) (columns e
 			continue
 		}
 		for _, h := range header {
-			if name := strings.TrimSpace(h); strings.EqualFold(name, string(field)) && !taken[name] {
+			if name := strings.TrimSpace(h); sameName(name, field) && !taken[name] {
 				columns[field] = name
 				taken[name] = true
 				break
@@ -91,6 +91,12 @@ func chooseColumns(header []string, asked, guessed extract.ColumnMap) (columns e
 		return nil, nil, fmt.Errorf("no column holds an amount; the headers are %s; name one with --columns amount=HEADER", quoted(header))
 	}
 	return columns, notes, nil
+}
+
+// sameName tells that a header is a field's name, whatever its case and with
+// spaces or hyphens for underscores: "Claim ID" is claim_id.
+func sameName(header string, field extract.Field) bool {
+	return strings.EqualFold(strings.NewReplacer(" ", "_", "-", "_").Replace(header), string(field))
 }
 
 // terms are the fields that change what an amount means.

@@ -8,9 +8,9 @@ import (
 	"spillway/storage/extract"
 )
 
-// shownFindings is how many findings are printed one by one; the groups below
-// them count them all.
-const shownFindings = 40
+// shownFindings is how many findings of a kind are printed one by one; the
+// groups below them count them all.
+const shownFindings = 10
 
 // findingGroup is a kind of finding in JSON output.
 type findingGroup struct {
@@ -31,7 +31,7 @@ func groupFindings(report *extract.Report) []findingGroup {
 	groups := []findingGroup{}
 	for _, g := range report.Groups {
 		group := findingGroup{string(g.Rule), g.Column, string(g.Effect), g.Count, []findingLine{}}
-		for _, f := range g.First[:min(len(g.First), 10)] {
+		for _, f := range g.First[:min(len(g.First), shownFindings)] {
 			group.First = append(group.First, findingLine{f.Line, f.Value, f.Message})
 		}
 		groups = append(groups, group)
@@ -39,11 +39,11 @@ func groupFindings(report *extract.Report) []findingGroup {
 	return groups
 }
 
-// byLine is all findings that the report keeps, in order of line.
-func byLine(report *extract.Report) []extract.Finding {
+// byLine is the first findings of every group, in order of line.
+func byLine(report *extract.Report, most int) []extract.Finding {
 	all := []extract.Finding{}
 	for _, g := range report.Groups {
-		all = append(all, g.First...)
+		all = append(all, g.First[:min(len(g.First), most)]...)
 	}
 	slices.SortStableFunc(all, func(a, b extract.Finding) int { return cmp.Compare(a.Line, b.Line) })
 	return all
@@ -52,20 +52,19 @@ func byLine(report *extract.Report) []extract.Finding {
 // printFindings lists findings in order of line on standard error, and what
 // they come to.
 func printFindings(io *streams, name string, report *extract.Report) {
-	all, total := byLine(report), 0
+	shown, total := byLine(report, shownFindings), 0
 	for _, g := range report.Groups {
 		total += g.Count
 	}
 	if total == 0 {
 		return
 	}
-	shown := all[:min(len(all), shownFindings)]
 	for _, f := range shown {
 		fmt.Fprintf(io.err, "%s: line %d, column %s, %q: %s (%s, %s)\n", name, f.Line, f.Column, f.Value, f.Message, f.Rule, outcomeOf(f.Effect))
 	}
 	fmt.Fprintf(io.err, "%s: %d findings", name, total)
 	if total > len(shown) {
-		fmt.Fprintf(io.err, ", the first %d above", len(shown))
+		fmt.Fprintf(io.err, ", the first %d of a kind above", shownFindings)
 	}
 	fmt.Fprintf(io.err, "; %d of %d rows rejected\n", report.Rejected, report.Read)
 	for _, g := range report.Groups {

@@ -86,6 +86,7 @@ func oracles() []oracle {
 				{name: "amounts alone", file: rows("amount", setB, func(x float64) string { return fmt.Sprint(x) })},
 				{name: "another header", file: rows("cost", setB, func(x float64) string { return fmt.Sprint(x) }), flags: []string{"--columns", "amount=cost"}},
 				{name: "deductible of nothing", file: rows("amount,deductible", setB, func(x float64) string { return fmt.Sprintf("%v,0", x) }), flags: []string{"--basis", "net"}},
+				{name: "another header in continental dress", file: rows("Kosten;Nr", setB, func(x float64) string { return fmt.Sprintf("%v,00;C%v", x, x) }), flags: []string{"--columns", "amount=Kosten"}},
 				{name: "limit never reached", file: rows("amount,limit", setB, func(x float64) string { return fmt.Sprintf("%v,20000", x) })},
 				{name: "paid and outstanding", file: rows("claim_id,paid,outstanding", setB, func(x float64) string { return fmt.Sprintf("C%v,%v,%v", x, x-7, 7) })},
 				{name: "semicolons and decimal commas", file: rows("amount;claim_id", setB, func(x float64) string { return fmt.Sprintf("%v,00;C%v", x, x) })},

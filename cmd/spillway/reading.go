@@ -96,7 +96,7 @@ func (r *reading) bytes(streams *streams) (*input, error) {
 // settle guesses how the file is written, puts what was asked above the guess,
 // and refuses to go on where neither decides.
 func (in *input) settle(r *reading, asked extract.ColumnMap, basis claims.Basis, streams *streams) error {
-	guess, err := extract.SniffAs(in.file, in.size, r.given())
+	guess, err := extract.SniffAs(in.file, in.size, r.given(), asked)
 	if err != nil {
 		return err
 	}

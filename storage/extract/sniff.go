@@ -38,12 +38,13 @@ func Sniff(file io.ReaderAt, size int64, name string) (Guess, error) {
 	if err != nil {
 		return Guess{}, err
 	}
-	return sniffRows(file, size, format, sheets, hidden)
+	return sniffRows(file, size, format, sheets, hidden, nil)
 }
 
 // SniffAs is Sniff with what the user says of the file in place of the guess:
-// encoding, delimiter, header line and sheet are taken as given where set.
-func SniffAs(file io.ReaderAt, size int64, given Format) (Guess, error) {
+// encoding, delimiter, header line, sheet and single columns are taken as
+// given where set, and marks and dates guessed from the columns so mapped.
+func SniffAs(file io.ReaderAt, size int64, given Format, columns ColumnMap) (Guess, error) {
 	format, sheets, hidden, err := sniffKind(file, size)
 	if err != nil {
 		return Guess{}, err
@@ -55,7 +56,7 @@ func SniffAs(file io.ReaderAt, size int64, given Format) (Guess, error) {
 		format.Sheet = given.Sheet
 	}
 	format.Delimiter, format.HeaderLine = given.Delimiter, given.HeaderLine
-	return sniffRows(file, size, format, sheets, hidden)
+	return sniffRows(file, size, format, sheets, hidden, columns)
 }
 
 func sniffKind(file io.ReaderAt, size int64) (f Format, sheets []string, hidden int, err error) {
@@ -93,7 +94,7 @@ func sniffKind(file io.ReaderAt, size int64) (f Format, sheets []string, hidden 
 	return Format{Kind: Delimited, Encoding: encoding}, nil, 0, err
 }
 
-func sniffRows(file io.ReaderAt, size int64, format Format, sheets []string, hidden int) (Guess, error) {
+func sniffRows(file io.ReaderAt, size int64, format Format, sheets []string, hidden int, columns ColumnMap) (Guess, error) {
 	format.Decimal, format.Thousands = ".", ""
 	if format.Kind == Delimited && format.Delimiter == "" {
 		d, err := guessDelimiter(file, size, format)
@@ -122,12 +123,28 @@ func sniffRows(file io.ReaderAt, size int64, format Format, sheets []string, hid
 	data := rows[at+1:]
 	g.Sample = data[:min(len(data), sampleRows)]
 	g.Columns = guessColumns(g.Header)
+	g.adopt(columns)
 	g.guessMarks(data)
 	g.guessDates(data)
 	if err := (Plan{Format: format, Columns: g.Columns}).missing(g.Header); err != nil {
 		g.Doubts = append(g.Doubts, Doubt{About: "columns", Question: "No column looks like an amount. Which column holds paid, incurred or the amount of the claim?", Choices: g.Header})
 	}
 	return g, nil
+}
+
+// adopt puts columns that were stated above those guessed; a header that the
+// file does not have is left to the reader to refuse.
+func (g *Guess) adopt(columns ColumnMap) {
+	for field, name := range columns {
+		for guessed, other := range g.Columns {
+			if other == name && guessed != field {
+				delete(g.Columns, guessed)
+			}
+		}
+		if slices.Contains(g.Header, name) {
+			g.Columns[field] = name
+		}
+	}
 }
 
 // missing tells whether no amount column is mapped.
