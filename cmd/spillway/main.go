@@ -22,6 +22,8 @@ type commands struct {
 	Fit     fitCommand     `cmd:"" help:"Fit a severity curve to a claim extract."`
 	Layers  layersCommand  `cmd:"" help:"Price layers and quantiles of a given curve."`
 	Check   checkCommand   `cmd:"" help:"Check a claim extract and list what was found."`
+	Serve   serveCommand   `cmd:"" help:"Serve the workbench in a browser."`
+	Demo    demoCommand    `cmd:"" help:"Serve the workbench with an invented book of claims in it."`
 	Version versionCommand `cmd:"" help:"Print the program's version."`
 }
 
@@ -40,9 +42,9 @@ type streams struct {
 
 func main() {
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
-	code := run(ctx, os.Args[1:])
-	stop()
-	os.Exit(code)
+	// The first signal asks to stop, a second one ends the program at once.
+	context.AfterFunc(ctx, stop)
+	os.Exit(run(ctx, os.Args[1:]))
 }
 
 func run(ctx context.Context, args []string) int {
