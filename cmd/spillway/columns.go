@@ -11,7 +11,8 @@ import (
 )
 
 // parseColumns reads "field=header,...". An item with a comma in its header is
-// quoted as in a CSV file: "paid=Paid, total".
+// quoted as in a CSV file: "paid=Paid, total". A field without a header is not
+// read at all, whatever the headers are.
 func parseColumns(texts []string) (extract.ColumnMap, error) {
 	columns := extract.ColumnMap{}
 	for _, text := range texts {
@@ -26,7 +27,7 @@ func parseColumns(texts []string) (extract.ColumnMap, error) {
 			field := extract.Field(strings.TrimSpace(name))
 			header = strings.TrimSpace(header)
 			switch {
-			case !ok || header == "":
+			case !ok:
 				return nil, usagef("--columns: %q: want field=header", item)
 			case !slices.Contains(extract.Fields, field):
 				return nil, usagef("--columns: no field %q; the fields are %s", field, join(extract.Fields))
@@ -55,6 +56,9 @@ func chooseColumns(header []string, asked, guessed extract.ColumnMap) (columns e
 	columns = extract.ColumnMap{}
 	taken := map[string]bool{}
 	for field, name := range asked {
+		if name == "" {
+			continue
+		}
 		if !slices.ContainsFunc(header, func(h string) bool { return strings.TrimSpace(h) == name }) {
 			return nil, nil, usagef("--columns %s=%s: there is no such header; the headers are %s", field, name, quoted(header))
 		}
@@ -62,7 +66,7 @@ func chooseColumns(header []string, asked, guessed extract.ColumnMap) (columns e
 		taken[name] = true
 	}
 	for _, field := range extract.Fields {
-		if _, ok := columns[field]; ok {
+		if _, settled := asked[field]; settled {
 			continue
 		}
 		for _, h := range header {
@@ -76,7 +80,8 @@ func chooseColumns(header []string, asked, guessed extract.ColumnMap) (columns e
 	adopt := !hasAmount(columns)
 	for _, field := range extract.Fields {
 		name, ok := guessed[field]
-		if _, have := columns[field]; !ok || have || taken[name] {
+		_, have := columns[field]
+		if _, settled := asked[field]; !ok || have || settled || taken[name] {
 			continue
 		}
 		if adopt {
@@ -87,10 +92,35 @@ func chooseColumns(header []string, asked, guessed extract.ColumnMap) (columns e
 			notes = append(notes, fmt.Sprintf("column %q looks like %s and is not read; --columns %s=%s reads it", name, field, field, name))
 		}
 	}
+	notes = append(notes, settleAmount(columns, asked)...)
 	if !hasAmount(columns) {
 		return nil, nil, fmt.Errorf("no column holds an amount; the headers are %s; name one with --columns amount=HEADER", quoted(header))
 	}
 	return columns, notes, nil
+}
+
+// settleAmount decides between the amount of a loss and its parts where the
+// file has both: what was asked for counts, else the amount.
+func settleAmount(columns, asked extract.ColumnMap) (notes []string) {
+	amount, ok := columns[extract.Amount]
+	if !ok {
+		return nil
+	}
+	_, wanted := asked[extract.Amount]
+	parts := []extract.Field{extract.Paid, extract.Outstanding, extract.Incurred}
+	for _, part := range parts {
+		if _, other := asked[part]; other && asked[part] != "" && !wanted {
+			delete(columns, extract.Amount)
+			return []string{fmt.Sprintf("column %q is not read: %s was asked for", amount, part)}
+		}
+	}
+	for _, part := range parts {
+		if name, ok := columns[part]; ok {
+			delete(columns, part)
+			notes = append(notes, fmt.Sprintf("column %q is not read: the loss is in column %q", name, amount))
+		}
+	}
+	return notes
 }
 
 // sameName tells that a header is a field's name, whatever its case and with

@@ -22,7 +22,6 @@ func (c *fitCommand) Run(io *streams) error {
 		return err
 	}
 	defer in.Close()
-	preferAmount(in.plan.Columns)
 	observations, read, err := observe(in)
 	if read != nil {
 		printFindings(io, in.name, read)
@@ -38,21 +37,11 @@ func (c *fitCommand) Run(io *streams) error {
 		return fmt.Errorf("%s: %w", in.name, err)
 	}
 	fit, none := severity.FitGamma(summary, c.Level)
-	report := newFitReport(fit, none, read, in.plan.Basis)
+	report := newFitReport(fit, none, read, in.plan)
 	if c.JSON {
 		return writeJSON(io, report)
 	}
 	return report.print(io, in.name)
-}
-
-// preferAmount leaves out the parts of a loss where the extract, or the user,
-// names its amount.
-func preferAmount(columns extract.ColumnMap) {
-	if _, ok := columns[extract.Amount]; ok {
-		for _, part := range []extract.Field{extract.Paid, extract.Outstanding, extract.Incurred} {
-			delete(columns, part)
-		}
-	}
 }
 
 // observe reads the whole file. The report is not nil when reading began.

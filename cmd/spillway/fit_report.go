@@ -4,31 +4,31 @@ import (
 	"math"
 
 	"spillway/severity"
-	"spillway/severity/claims"
 	"spillway/storage/extract"
 )
 
 // fitReport is the object of fit --json. Without a maximum, everything that
 // rests on one is null.
 type fitReport struct {
-	Status         severity.Status `json:"status"`
-	Reason         string          `json:"reason"`
-	Model          string          `json:"model"`
-	Parameters     *parameters     `json:"parameters"`
-	Mean           number          `json:"mean"`
-	CV             number          `json:"coefficient_of_variation"`
-	LogLikelihood  number          `json:"log_likelihood"`
-	AIC            number          `json:"aic"`
-	BIC            number          `json:"bic"`
-	StandardErrors *standardErrors `json:"standard_errors"`
-	CovarianceLn   *[2][2]number   `json:"covariance_ln"` // of (ln shape, ln scale)
-	Intervals      *intervals      `json:"intervals"`
-	Claims         claimCounts     `json:"claims"`
-	Convergence    convergence     `json:"convergence"`
-	Boundary       *boundary       `json:"boundary"` // only where the maximum is lost at the edge of a truncated gamma
-	Basis          basisReport     `json:"basis"`
-	Findings       []findingGroup  `json:"findings"`
-	Caution        string          `json:"caution"`
+	Status         severity.Status   `json:"status"`
+	Reason         string            `json:"reason"`
+	Model          string            `json:"model"`
+	Parameters     *parameters       `json:"parameters"`
+	Mean           number            `json:"mean"`
+	CV             number            `json:"coefficient_of_variation"`
+	LogLikelihood  number            `json:"log_likelihood"`
+	AIC            number            `json:"aic"`
+	BIC            number            `json:"bic"`
+	StandardErrors *standardErrors   `json:"standard_errors"`
+	CovarianceLn   *[2][2]number     `json:"covariance_ln"` // of (ln shape, ln scale)
+	Intervals      *intervals        `json:"intervals"`
+	Claims         claimCounts       `json:"claims"`
+	Convergence    convergence       `json:"convergence"`
+	Boundary       *boundary         `json:"boundary"` // only where the maximum is lost at the edge of a truncated gamma
+	Basis          basisReport       `json:"basis"`
+	Columns        extract.ColumnMap `json:"columns"` // field to header, as read
+	Findings       []findingGroup    `json:"findings"`
+	Caution        string            `json:"caution"`
 }
 
 type standardErrors struct {
@@ -89,12 +89,13 @@ type basisReport struct {
 	Currency   string `json:"currency,omitempty"`
 }
 
-func newFitReport(fit *severity.Fit, none *severity.FitError, read *extract.Report, basis claims.Basis) fitReport {
-	missing := number(math.NaN())
+func newFitReport(fit *severity.Fit, none *severity.FitError, read *extract.Report, plan extract.Plan) fitReport {
+	missing, basis := number(math.NaN()), plan.Basis
 	r := fitReport{
 		Model: "gamma",
 		Mean:  missing, CV: missing, LogLikelihood: missing, AIC: missing, BIC: missing,
 		Basis:    basisReport{basis.Amounts.String(), basis.Deductible.String(), basis.Limit.String(), basis.Currency},
+		Columns:  plan.Columns,
 		Findings: groupFindings(read),
 		Caution:  caution,
 	}

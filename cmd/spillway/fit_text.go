@@ -2,9 +2,11 @@ package main
 
 import (
 	"fmt"
+	"strings"
 	"text/tabwriter"
 
 	"spillway/severity"
+	"spillway/storage/extract"
 )
 
 // print writes the report for people: what was read, which curve, how sure.
@@ -12,6 +14,7 @@ func (r *fitReport) print(io *streams, name string) error {
 	out := io.out
 	fmt.Fprintf(out, "%s: %d rows read, %d rejected\n", name, r.Claims.Read, r.Claims.Rejected)
 	fmt.Fprintf(out, "Amounts %s, %s deductible, limit as %s%s.\n", r.Basis.Amounts, r.Basis.Deductible, r.Basis.Limit, inCurrency(r.Basis.Currency))
+	fmt.Fprintf(out, "Losses read from %s.\n", lossColumns(r.Columns))
 	fmt.Fprintf(out, "%d claims used (weight %s): %d exact, %d only known to be above the limit; %d above a deductible.\n\n",
 		r.Claims.Used, figure(float64(r.Claims.Weight)), r.Claims.Uncensored, r.Claims.Censored, r.Claims.Truncated)
 	if r.Status != severity.Converged {
@@ -49,6 +52,17 @@ func (r *fitReport) print(io *streams, name string) error {
 		r.Convergence.Iterations, float64(r.Convergence.ScoreNorm), float64(r.Convergence.NewtonDecrement), float64(r.Convergence.Condition), r.Reason)
 	_, err := fmt.Fprintf(out, "\n%s\n", caution)
 	return err
+}
+
+// lossColumns names the columns that make the loss.
+func lossColumns(columns extract.ColumnMap) string {
+	var names []string
+	for _, field := range []extract.Field{extract.Amount, extract.Paid, extract.Outstanding, extract.Incurred} {
+		if name, ok := columns[field]; ok {
+			names = append(names, fmt.Sprintf("%q (%s)", name, field))
+		}
+	}
+	return strings.Join(names, " and ")
 }
 
 func inCurrency(currency string) string {

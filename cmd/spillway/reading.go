@@ -17,7 +17,7 @@ import (
 // is, how it is written, and what its columns mean.
 type reading struct {
 	File    string   `arg:"" help:"Claim extract, CSV or XLSX; - for standard input."`
-	Columns []string `sep:"none" placeholder:"FIELD=HEADER,..." help:"Which header holds which field: ${fields}. A header equal to a field's name needs no mapping."`
+	Columns []string `sep:"none" placeholder:"FIELD=HEADER,..." help:"Which header holds which field: ${fields}. A header equal to a field's name needs no mapping; FIELD= leaves a field unread."`
 
 	Basis          string `enum:"ground-up,net" default:"ground-up" help:"Amounts are ${enum} (of the deductible)."`
 	DeductibleType string `enum:"ordinary,franchise" default:"ordinary" help:"Deductibles are ${enum}."`
