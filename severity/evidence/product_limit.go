@@ -3,6 +3,7 @@ package evidence
 import (
 	"math"
 	"sort"
+	"sync"
 )
 
 // state is where a walk through the rows stands: between two distinct losses.
@@ -52,43 +53,46 @@ func (s *Sample) next(c *state, p *step) bool {
 	for c.entry < len(s.entries) && s.entries[c.entry].threshold < loss {
 		c.entry++
 	}
-	atRisk := c.rest
-	if c.entry < len(s.entries) {
-		atRisk = atRisk.minus(s.entries[c.entry].rest)
-	}
-	*p = step{loss: loss, before: c.survival}
+	var atRisk, events float64
+	censored := 0
 	if s.weights == nil {
+		atRisk = c.rest.hi
+		if c.entry < len(s.entries) {
+			atRisk -= s.entries[c.entry].rest.hi
+		}
 		for i < len(s.keys) && s.keys[i]>>1 == bits {
-			p.censored += int(s.keys[i] & 1)
+			censored += int(s.keys[i] & 1)
 			i++
 		}
-		p.exact = i - c.row - p.censored
-		p.events = float64(p.exact)
+		events = float64(i - c.row - censored)
 		c.rest.hi -= float64(i - c.row)
 	} else {
-		var events exact
+		risk, sum := c.rest, exact{}
+		if c.entry < len(s.entries) {
+			risk = risk.minus(s.entries[c.entry].rest)
+		}
 		for ; i < len(s.keys) && s.keys[i]>>1 == bits; i++ {
 			w := s.weights[i]
 			c.rest = c.rest.plus(-w)
 			if s.keys[i]&1 == 1 {
-				p.censored++
+				censored++
 				continue
 			}
-			p.exact++
-			events = events.plus(w)
+			sum = sum.plus(w)
 		}
-		p.events = events.value()
+		atRisk, events = risk.value(), sum.value()
 	}
 	if s.atThreshold != nil {
 		if w, ok := s.atThreshold[loss]; ok {
-			p.events -= w.value()
+			events -= w.value()
 		}
 	}
-	c.row, c.loss, p.atRisk = i, loss, atRisk.value()
-	if p.events > 0 {
-		if left := p.atRisk - p.events; left > 0 {
-			c.survival *= left / p.atRisk
-			c.variance += p.events / (p.atRisk * left)
+	*p = step{loss: loss, atRisk: atRisk, events: events, exact: i - c.row - censored, censored: censored, before: c.survival}
+	c.row, c.loss = i, loss
+	if events > 0 {
+		if left := atRisk - events; left > 0 {
+			c.survival *= left / atRisk
+			c.variance += events / (atRisk * left)
 		} else {
 			c.survival, c.variance = 0, math.NaN()
 		}
@@ -110,47 +114,63 @@ const blockRows = 1024
 // measure walks the rows once and keeps what later answers start from.
 func (s *Sample) measure() {
 	s.collapse = math.NaN()
-	s.blocks = make([]block, 0, len(s.keys)/blockRows+1)
+	bounds := s.blockBounds()
+	s.blocks = make([]block, len(bounds)-1)
+	var wait sync.WaitGroup
+	wait.Go(func() {
+		for i := range s.blocks {
+			s.blocks[i].spread = s.spreadOf(bounds[i], bounds[i+1])
+		}
+	})
 	c := s.start()
-	var p step
-	var risk step
+	var p, risk step
 	var riskAfter state
 	half := false // the curve has come down to one half
-	var b *block
-	for {
-		if b == nil || c.row-b.start.row >= blockRows {
-			if b != nil {
-				b.spread = s.spreadOf(b.start.row, c.row)
+	for i := range s.blocks {
+		b := &s.blocks[i]
+		b.start, b.censored = c, c.row-s.uncensored
+		for c.row < bounds[i+1] {
+			from := c.loss
+			s.next(&c, &p)
+			b.integral += p.before * (p.loss - from)
+			s.uncensored += p.exact
+			if p.exact > 0 {
+				s.largest = p.loss
 			}
-			if c.row == len(s.keys) {
-				break
+			if half && c.survival > 0 || p.events <= 0 {
+				continue
 			}
-			s.blocks = append(s.blocks, block{start: c, censored: c.row - s.uncensored})
-			b = &s.blocks[len(s.blocks)-1]
-		}
-		from, height := c.loss, c.survival
-		if !s.next(&c, &p) {
-			b.spread = s.spreadOf(b.start.row, c.row)
-			break
-		}
-		b.integral += height * (p.loss - from)
-		s.uncensored += p.exact
-		if p.exact > 0 {
-			s.largest = p.loss
-		}
-		if p.events > 0 {
 			if !half && (risk.atRisk == 0 || p.atRisk < risk.atRisk) {
 				risk, riskAfter = p, c
 			}
 			half = half || c.survival <= 0.5
-			if c.survival == 0 && height > 0 && c.row < len(s.keys) {
+			if c.survival == 0 && p.before > 0 && c.row < len(s.keys) {
 				s.collapse, s.hasCollapse = p.loss, true
 			}
 		}
 	}
-	s.end = c
-	s.largestLoss = c.loss
+	wait.Wait()
+	s.end, s.largestLoss = c, c.loss
 	s.smallestRisk = point(risk, riskAfter)
+}
+
+// blockBounds are the first rows of the blocks, and the number of rows: no
+// loss lies in two blocks.
+func (s *Sample) blockBounds() []int {
+	bounds := make([]int, 1, len(s.keys)/blockRows+2)
+	for at := blockRows; at < len(s.keys); at += blockRows {
+		last := s.keys[at-1] >> 1
+		for at < len(s.keys) && s.keys[at]>>1 == last {
+			at++
+		}
+		if at < len(s.keys) {
+			bounds = append(bounds, at)
+		}
+	}
+	if len(s.keys) > 0 {
+		bounds = append(bounds, len(s.keys))
+	}
+	return bounds
 }
 
 func point(p step, after state) ProductLimitPoint {
@@ -189,8 +209,8 @@ func (s *Sample) SmallestRisk() ProductLimitPoint { return s.smallestRisk }
 // own threshold is not at risk of being seen there and is no event. After a
 // Collapse the points go on with Survival 0.
 //
-// Equal to 1e-12 relative to testdata/gof/km_*.csv, whose generator agrees with
-// R's survfit: largest difference 0.0e-00 in survival and standard error.
+// Against testdata/gof/km_*.csv, whose generator agrees with R's survfit, the
+// largest relative difference in survival and standard error is 7e-15.
 func (s *Sample) ProductLimit() []ProductLimitPoint {
 	points := make([]ProductLimitPoint, 0, s.uncensored)
 	c := s.start()

@@ -41,6 +41,7 @@ type entry struct {
 	threshold float64
 	weight    exact // of the rows with this very threshold
 	rest      exact
+	ones      int // rows of weight 1 not yet in weight
 }
 
 const workers = 2 // goroutines of Build: the work is bound by memory
@@ -172,6 +173,7 @@ func mergedEntries(parts []intake) []entry {
 	sort.SliceStable(all, func(i, j int) bool { return all[i].threshold < all[j].threshold })
 	merged := all[:0]
 	for _, e := range all {
+		e.weight, e.ones = e.weight.plus(float64(e.ones)), 0
 		if n := len(merged); n > 0 && merged[n-1].threshold == e.threshold {
 			merged[n-1].weight = merged[n-1].weight.add(e.weight)
 			continue
@@ -214,17 +216,12 @@ func sortedEntries(observations []severity.Observation, weighted bool) []entry {
 type tally struct {
 	slots   [tallySize]int16 // index in entries + 1; 0 for free
 	entries []entry
-	last    int // of the entry added to
 }
 
 const tallySize = 1024
 
 // add is false when there is no room for another threshold.
 func (t *tally) add(threshold, weight float64) bool {
-	if t.last < len(t.entries) && t.entries[t.last].threshold == threshold {
-		t.entries[t.last].weight = t.entries[t.last].weight.plus(weight)
-		return true
-	}
 	h := (math.Float64bits(threshold+0) * 0x9e3779b97f4a7c15) >> 54
 	for ; ; h = (h + 1) % tallySize {
 		i := int(t.slots[h]) - 1
@@ -237,8 +234,11 @@ func (t *tally) add(threshold, weight float64) bool {
 			t.slots[h] = int16(i + 1)
 		}
 		if t.entries[i].threshold == threshold {
-			t.entries[i].weight = t.entries[i].weight.plus(weight)
-			t.last = i
+			if weight == 1 {
+				t.entries[i].ones++
+			} else {
+				t.entries[i].weight = t.entries[i].weight.plus(weight)
+			}
 			return true
 		}
 	}
