@@ -59,7 +59,10 @@ func lossColumns(columns extract.ColumnMap) string {
 	var names []string
 	for _, field := range []extract.Field{extract.Amount, extract.Paid, extract.Outstanding, extract.Incurred} {
 		if name, ok := columns[field]; ok {
-			names = append(names, fmt.Sprintf("%q (%s)", name, field))
+			if name != string(field) {
+				name = fmt.Sprintf("%q (%s)", name, field)
+			}
+			names = append(names, name)
 		}
 	}
 	return strings.Join(names, " and ")

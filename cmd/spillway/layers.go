@@ -9,7 +9,7 @@ import (
 )
 
 type layersCommand struct {
-	Model    string    `enum:"gamma" default:"gamma" help:"Family of the curve: ${enum}."`
+	Model    string    `enum:"gamma" default:"gamma" help:"Family of the curve: gamma."`
 	Shape    float64   `required:"" help:"Shape of the curve, above 0."`
 	Scale    float64   `required:"" help:"Scale of the curve, above 0, in money."`
 	Layer    []string  `sep:"none" placeholder:"\"L xs A\"" help:"Limit L (a number or unlimited) in excess of attachment A. May be repeated."`

@@ -19,20 +19,20 @@ type reading struct {
 	File    string   `arg:"" help:"Claim extract, CSV or XLSX; - for standard input."`
 	Columns []string `sep:"none" placeholder:"FIELD=HEADER,..." help:"Which header holds which field: ${fields}. A header equal to a field's name needs no mapping; FIELD= leaves a field unread."`
 
-	Basis          string `enum:"ground-up,net" default:"ground-up" help:"Amounts are ${enum} (of the deductible)."`
-	DeductibleType string `enum:"ordinary,franchise" default:"ordinary" help:"Deductibles are ${enum}."`
-	LimitBasis     string `enum:"payment,top" default:"payment" help:"Limits are the maximum payment or the ground-up top of cover: ${enum}."`
+	Basis          string `enum:"ground-up,net" default:"ground-up" help:"Amounts are ground-up, or net of the deductible."`
+	DeductibleType string `enum:"ordinary,franchise" default:"ordinary" help:"Deductibles are ordinary or franchise, where no column says."`
+	LimitBasis     string `enum:"payment,top" default:"payment" help:"Limits are the maximum payment, or the ground-up top of cover."`
 
-	BlankDeductible string `enum:"refuse,exclude,none" default:"refuse" help:"A blank deductible stops the run, excludes its row, or means that there is none: ${enum}."`
-	BlankLimit      string `enum:"refuse,exclude,none" default:"refuse" help:"A blank limit, likewise: ${enum}."`
+	BlankDeductible string `enum:"refuse,exclude,none" default:"refuse" help:"What a blank deductible does: refuse stops the run, exclude leaves its row out, none means that there is no deductible."`
+	BlankLimit      string `enum:"refuse,exclude,none" default:"refuse" help:"What a blank limit does: likewise."`
 	Currency        string `placeholder:"CODE" help:"Currency of the amounts, ISO 4217; rows of a currency column with another are rejected."`
 	Valuation       string `placeholder:"DATE" help:"Valuation date of the extract, such as 2025-06-30."`
 
-	Encoding  string `enum:"auto,utf-8,utf-16le,utf-16be,windows-1252" default:"auto" help:"Character encoding: ${enum}."`
+	Encoding  string `enum:"auto,utf-8,utf-16le,utf-16be,windows-1252" default:"auto" help:"Character encoding: auto, utf-8, utf-16le, utf-16be or windows-1252."`
 	Delimiter string `placeholder:"MARK" help:"What parts the cells: , ; | or tab."`
 	Decimal   string `placeholder:"MARK" help:"Decimal mark: . or ,"`
 	Thousands string `placeholder:"MARK" help:"Mark between thousands: , . ' space or none."`
-	DateOrder string `enum:"auto,day-first,month-first" default:"auto" help:"What a date such as 03/04/2025 begins with: ${enum}."`
+	DateOrder string `enum:"auto,day-first,month-first" default:"auto" help:"What a date such as 03/04/2025 begins with: auto, day-first or month-first."`
 	Header    int    `placeholder:"LINE" help:"Line of the headers, from 1."`
 	Sheet     string `placeholder:"NAME" help:"Sheet of a workbook."`
 }
@@ -73,24 +73,32 @@ func (r *reading) open(streams *streams) (*input, error) {
 
 func (r *reading) bytes(streams *streams) (*input, error) {
 	if r.File == "-" {
-		content, err := io.ReadAll(streams.in)
-		if err != nil {
-			return nil, fmt.Errorf("standard input: %w", err)
-		}
-		return &input{name: "standard input", file: bytes.NewReader(content), size: int64(len(content)), Closer: io.NopCloser(nil)}, nil
+		return buffered("standard input", streams.in, io.NopCloser(nil))
 	}
 	file, err := os.Open(r.File)
 	if err != nil {
 		return nil, err
 	}
 	about, err := file.Stat()
-	if err == nil && !about.Mode().IsRegular() {
-		err = fmt.Errorf("%s is no file; give - and pipe it in", r.File)
+	if err == nil && about.IsDir() {
+		err = fmt.Errorf("%s is a folder, not a file", r.File)
 	}
 	if err != nil {
 		return nil, errors.Join(err, file.Close())
 	}
+	if !about.Mode().IsRegular() { // a pipe
+		return buffered(r.File, file, file)
+	}
 	return &input{name: r.File, file: file, size: about.Size(), Closer: file}, nil
+}
+
+// buffered holds in memory what can be read only once.
+func buffered(name string, from io.Reader, closer io.Closer) (*input, error) {
+	content, err := io.ReadAll(from)
+	if err != nil {
+		return nil, errors.Join(fmt.Errorf("%s: %w", name, err), closer.Close())
+	}
+	return &input{name: name, file: bytes.NewReader(content), size: int64(len(content)), Closer: closer}, nil
 }
 
 // settle guesses how the file is written, puts what was asked above the guess,

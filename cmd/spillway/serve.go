@@ -8,13 +8,16 @@ import (
 )
 
 type serveCommand struct {
-	Data            string `xor:"place" required:"" placeholder:"DIR" help:"Folder of the database and the uploaded files; made when absent."`
-	Database        string `xor:"place" required:"" placeholder:"FILE" help:"Database file; uploaded files stand in a folder beside it."`
+	Data            string `xor:"place" placeholder:"DIR" help:"Folder of the database and the uploaded files; made when absent."`
+	Database        string `xor:"place" placeholder:"FILE" help:"Database file; uploaded files stand in a folder beside it."`
 	Addr            string `placeholder:"HOST:PORT" help:"Address to serve on (127.0.0.1:8080)."`
 	ExposeToNetwork bool   `help:"Serve on an address that other machines can reach. There are no accounts yet: whoever reaches it can read and change everything."`
 }
 
 func (c *serveCommand) Run(ctx context.Context, io *streams) (err error) {
+	if c.Data == "" && c.Database == "" {
+		return usagef("serve: say where the database is: --data DIR or --database FILE")
+	}
 	log := slog.New(slog.NewTextHandler(io.err, nil))
 	listener, err := listen(c.Addr, c.ExposeToNetwork)
 	if err != nil {
