@@ -66,6 +66,9 @@ func TestUnreadableInputExits1(t *testing.T) {
 		"no amount":           {content: "claim_id,colour\nA,red\nB,blue\n", says: []string{"amount", "colour", "--columns amount="}},
 		"blank deductible":    {content: "amount,deductible\n100,10\n200,\n300,10\n", says: []string{"3", "deductible", "--blank-deductible none", "line"}},
 		"blank limit":         {content: "amount,limit\n100,1000\n200,1000\n300,\n", says: []string{"4", "limit", "--blank-limit none", "line"}},
+		"day or month first":  {content: "amount,loss_date\n10,03/04/2025\n20,05/06/2025\n", says: []string{"05/06/2025", "--date-order day-first or month-first"}},
+		"thousands or not":    {content: "amount;segment\n1.234;A\n2.345;A\n", says: []string{"2.345", "--decimal"}},
+		"two headers alike":   {content: "amount,amount\n1,2\n", says: []string{"line 1", "amount"}},
 		"not a spreadsheet":   {content: "PK\x03\x04 this is no workbook", says: []string{"claims.csv"}},
 		"picture, not a text": {content: "\x89PNG\r\n\x1a\n\x00\x00\x00\rIHDR\x00\x00", says: []string{"claims.csv"}},
 	} {
@@ -88,6 +91,17 @@ func TestUnreadableInputExits1(t *testing.T) {
 			}
 		})
 	}
+}
+
+// TestDoubtsAreSettledByFlags: what stopped the runs above is settled by the
+// flag that the message names.
+func TestDoubtsAreSettledByFlags(t *testing.T) {
+	dates := "amount,loss_date\n10,03/04/2025\n20,05/06/2025\n"
+	answer(t, dates, "fit", "-", "--json", "--date-order", "day-first").is(t, 2, "claims", "used")
+	answer(t, dates, "fit", "-", "--json", "--columns", "loss_date=").is(t, 2, "claims", "used")
+	marks := "amount;segment\n1.234;A\n2.346;A\n"
+	answer(t, marks, "fit", "-", "--json", "--decimal", ",", "--thousands", ".").near(t, 1790, 1e-12, "mean")
+	answer(t, marks, "fit", "-", "--json", "--decimal", ".").near(t, 1.79, 1e-12, "mean")
 }
 
 // TestStatedNonExistenceExits0: no curve is an answer.
