@@ -122,9 +122,9 @@ func (s *Sample) measure() {
 			s.blocks[i].spread = s.spreadOf(bounds[i], bounds[i+1])
 		}
 	})
+	sketch := s.newSketch()
 	c := s.start()
-	var p, risk step
-	var riskAfter state
+	var p step
 	half := false // the curve has come down to one half
 	for i := range s.blocks {
 		b := &s.blocks[i]
@@ -134,14 +134,12 @@ func (s *Sample) measure() {
 			s.next(&c, &p)
 			b.integral += p.before * (p.loss - from)
 			s.uncensored += p.exact
-			if p.exact > 0 {
-				s.largest = p.loss
-			}
+			sketch.take(&p, &c)
 			if half && c.survival > 0 || p.events <= 0 {
 				continue
 			}
-			if !half && (risk.atRisk == 0 || p.atRisk < risk.atRisk) {
-				risk, riskAfter = p, c
+			if !half && (s.smallestRisk.AtRisk == 0 || p.atRisk < s.smallestRisk.AtRisk) {
+				s.smallestRisk = point(p, c)
 			}
 			half = half || c.survival <= 0.5
 			if c.survival == 0 && p.before > 0 && c.row < len(s.keys) {
@@ -150,8 +148,14 @@ func (s *Sample) measure() {
 		}
 	}
 	wait.Wait()
+	s.exactMarks, s.censoredMarks = sketch.marks[0], sketch.marks[1]
 	s.end, s.largestLoss = c, c.loss
-	s.smallestRisk = point(risk, riskAfter)
+	for i := len(s.keys) - 1; i >= 0; i-- {
+		if s.keys[i]&1 == 0 {
+			s.largest = rowLoss(s.keys[i])
+			break
+		}
+	}
 }
 
 // blockBounds are the first rows of the blocks, and the number of rows: no

@@ -13,63 +13,26 @@ import "math"
 // with S(x)/S(d) = s(t). One point for each distinct loss of either kind; none
 // where the position is zero, that is after a Collapse.
 //
-// Points are in the order of the losses and thinned as by Thin: those that the
-// eye cannot tell apart are dropped, the 50 largest of either kind always kept.
+// Points are in the order of the losses, exact before censored ones, and each
+// kind is thinned as by Thin: a point left out lies within two of its steps of
+// one shown, and the 50 largest of either kind are always shown.
 func (s *Sample) QQ(curve Curve) []QQPoint {
-	points, base := s.positions(curve), curve.LogSurvival(s.lowest)
-	for i := range points {
-		points[i].Fitted = curve.InverseLogSurvival(base + math.Log(points[i].Survival))
-	}
-	return points
-}
-
-// positions are the thinned points without their fitted quantiles: the steps
-// of the fitted axis are held against the positions, so that the curve is
-// inverted for the points kept only.
-func (s *Sample) positions(curve Curve) []QQPoint {
-	if len(s.keys) == 0 {
-		return nil
-	}
-	first := rowLoss(s.keys[0])
-	fitted := s.fittedRuler(curve, first)
-	marks := [2]struct {
-		points         thinner[QQPoint]
-		observed, axis *ruler
-	}{}
-	for i := range marks {
-		axis := *fitted
-		marks[i].observed, marks[i].axis = newRuler(first, s.largestLoss), &axis
-	}
-	c := s.start()
-	push := func(kind int, p QQPoint) {
-		if p.Survival > 0 {
-			m := &marks[kind]
-			m.points.push(p, m.observed.read(p.Observed), m.axis.read(-p.Survival))
-		}
-	}
-	for p := (step{}); s.next(&c, &p); {
-		if p.events > 0 {
-			push(0, QQPoint{Observed: p.loss, Survival: 0.5 * (p.before + c.survival)})
-		}
-		if p.censored > 0 {
-			push(1, QQPoint{Observed: p.loss, Survival: c.survival, Censored: true})
-		}
-	}
-	return byLoss(marks[0].points.points(), marks[1].points.points())
-}
-
-// fittedRuler divides the fitted axis, from the smallest loss to four times the
-// largest, in terms of minus the conditional survival there.
-func (s *Sample) fittedRuler(curve Curve, first float64) *ruler {
 	base := curve.LogSurvival(s.lowest)
-	r := newRuler(first, s.largestLoss)
-	for share := 1.0; share < 4; share += 1.0 / resolution {
-		r.bounds = append(r.bounds, s.largestLoss*share)
+	place := func(marks []mark, censored bool) []QQPoint {
+		points := make([]QQPoint, 0, len(marks))
+		for _, m := range marks {
+			position := m.survival
+			if !censored {
+				position = 0.5 * (m.before + m.survival)
+			}
+			if position > 0 {
+				fitted := curve.InverseLogSurvival(base + math.Log(position))
+				points = append(points, QQPoint{m.loss, fitted, position, censored})
+			}
+		}
+		return Thin(points, func(p QQPoint) (float64, float64) { return p.Observed, p.Fitted })
 	}
-	for i, x := range r.bounds {
-		r.bounds[i] = -math.Exp(curve.LogSurvival(x) - base)
-	}
-	return r
+	return byLoss(place(s.exactMarks, false), place(s.censoredMarks, true))
 }
 
 // byLoss merges two ascending lists; exact losses come before censored ones.

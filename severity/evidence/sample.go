@@ -33,6 +33,8 @@ type Sample struct {
 	hasCollapse          bool
 	smallestRisk         ProductLimitPoint
 	largestLoss, largest float64 // of all rows, of the uncensored rows
+
+	exactMarks, censoredMarks []mark // what pictures are drawn from
 }
 
 // entry is a threshold and the weight of the rows whose threshold is that one

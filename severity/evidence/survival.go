@@ -10,51 +10,38 @@ import "math"
 //
 // which stays within [0, 1]. Where Ŝ is 0 Greenwood's formula has no value: the
 // band then reaches from 0 to the upper end of the step before. A nil curve
-// leaves Fitted NaN. Points are thinned as by Thin; none after a Collapse but
+// leaves Fitted NaN. Points are thinned as by Thin, here with the estimate
+// falling; the 50 largest losses are always shown. None after a Collapse but
 // the one at which it happens.
 func (s *Sample) Survival(curve Curve, level float64) []SurvivalPoint {
-	if len(s.keys) == 0 {
-		return nil
-	}
-	xs := newRuler(rowLoss(s.keys[0]), s.largestLoss)
-	ys := s.survivalRuler()
-	var t thinner[survivalStep]
-	at := survivalStep{bandFrom: 1}
-	c := s.start()
-	for p := (step{}); c.survival > 0 && s.next(&c, &p); {
-		if p.events == 0 {
-			continue
-		}
-		at.loss, at.survival = p.loss, c.survival
-		if c.survival > 0 {
-			at.bandFrom, at.variance = c.survival, c.variance
-		}
-		t.push(at, xs.read(p.loss), ys.read(-c.survival))
-	}
-	kept := t.points()
-	points := make([]SurvivalPoint, len(kept))
 	base := 0.0
 	if curve != nil {
 		base = curve.LogSurvival(s.lowest)
 	}
 	z := math.Sqrt2 * math.Erfinv(level)
-	for i, k := range kept {
-		p := SurvivalPoint{Loss: k.loss, Empirical: k.survival, Fitted: math.NaN()}
-		p.Lower, p.Upper = band(k.bandFrom, math.Sqrt(k.variance), z)
-		if k.survival == 0 {
-			p.Lower = 0
+	var points []SurvivalPoint
+	bandTop := 1.0
+	for _, m := range s.exactMarks {
+		if m.before == 0 {
+			break
+		}
+		p := SurvivalPoint{Loss: m.loss, Empirical: m.survival, Upper: bandTop, Fitted: math.NaN()}
+		if m.survival > 0 {
+			p.Lower, p.Upper = band(m.survival, math.Sqrt(m.variance), z)
+			bandTop = p.Upper
 		}
 		if curve != nil {
-			p.Fitted = math.Exp(curve.LogSurvival(k.loss) - base)
+			p.Fitted = math.Exp(curve.LogSurvival(m.loss) - base)
 		}
-		points[i] = p
+		points = append(points, p)
 	}
-	return points
+	// The axes are those of the sketch without its finer steps near 1.
+	if len(points) <= alwaysKept {
+		return points
+	}
+	xs, ys := s.lossRuler(), s.survivalRuler()
+	return thin(points, xs, ys, func(p SurvivalPoint) (float64, float64) { return p.Loss, -p.Empirical })
 }
-
-// survivalStep is a step of the estimate and what its band starts from: the
-// step itself or, where the estimate is zero, the step before.
-type survivalStep struct{ loss, survival, bandFrom, variance float64 }
 
 // band is the interval of a survival in (0, 1] with standard error se of its
 // logarithm. At 1 nothing is known of the error: 0 to 1 would say so, but no
@@ -66,18 +53,4 @@ func band(survival, se, z float64) (lower, upper float64) {
 	}
 	half := z * se / math.Abs(l)
 	return math.Exp(l * math.Exp(half)), math.Exp(l * math.Exp(-half))
-}
-
-// survivalRuler divides the survival axis from 1 down to its smallest value
-// above zero, in terms of minus the survival.
-func (s *Sample) survivalRuler() *ruler {
-	least := s.end.survival
-	if least == 0 {
-		least = 1 / (s.total.value() + 1)
-	}
-	r := newRuler(least, 1)
-	for i, j := 0, len(r.bounds)-1; i <= j; i, j = i+1, j-1 {
-		r.bounds[i], r.bounds[j] = -r.bounds[j], -r.bounds[i]
-	}
-	return r
 }

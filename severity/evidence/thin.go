@@ -43,37 +43,7 @@ func (r *ruler) read(x float64) int {
 	return r.at
 }
 
-// thinner keeps the first point of each cell of the picture along a line that
-// runs in one direction, and the last points whatever their cells.
-type thinner[P any] struct {
-	kept    []P
-	pending []P // the last alwaysKept points and whether their cell is new
-	fresh   []bool
-	next    int
-	x, y    int
-	started bool
-}
-
-// push adds the next point, which lies in cell x, y.
-func (t *thinner[P]) push(p P, x, y int) {
-	fresh := !t.started || x != t.x || y != t.y
-	t.started, t.x, t.y = true, x, y
-	if len(t.pending) < alwaysKept {
-		t.pending, t.fresh = append(t.pending, p), append(t.fresh, fresh)
-		return
-	}
-	if t.fresh[t.next] {
-		t.kept = append(t.kept, t.pending[t.next])
-	}
-	t.pending[t.next], t.fresh[t.next] = p, fresh
-	t.next = (t.next + 1) % alwaysKept
-}
-
-// points are those kept, in their order.
-func (t *thinner[P]) points() []P {
-	kept := append(t.kept, t.pending[t.next:]...)
-	return append(kept, t.pending[:t.next]...)
-}
+type cell struct{ x, y int }
 
 // Thin drops points that the eye cannot tell from one before them: at gives
 // the place of a point, both coordinates >= 0, neither ever falling from one
@@ -86,11 +56,21 @@ func Thin[P any](points []P, at func(P) (x, y float64)) []P {
 	}
 	x0, y0 := at(points[0])
 	x1, y1 := at(points[len(points)-1])
-	xs, ys := newRuler(x0, x1), newRuler(y0, y1)
-	var t thinner[P]
-	for _, p := range points {
+	return thin(points, newRuler(x0, x1), newRuler(y0, y1), at)
+}
+
+// thin keeps the first point of each cell that the rulers make, and the last
+// points whatever their cells.
+func thin[P any](points []P, xs, ys *ruler, at func(P) (x, y float64)) []P {
+	var kept []P
+	last := cell{-1, -1}
+	for i, p := range points {
 		x, y := at(p)
-		t.push(p, xs.read(x), ys.read(y))
+		here := cell{xs.read(x), ys.read(y)}
+		if here != last || i >= len(points)-alwaysKept {
+			kept = append(kept, p)
+		}
+		last = here
 	}
-	return t.points()
+	return kept
 }
