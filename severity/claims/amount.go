@@ -1,6 +1,7 @@
 package claims
 
 import (
+	"errors"
 	"fmt"
 	"math/big"
 	"strconv"
@@ -14,6 +15,14 @@ type Amount struct {
 	Units    int64
 	Decimals int16 // 0 to 360
 }
+
+// ErrTooManyDigits is the error of a number with more than 18 significant
+// digits, which no Amount holds exactly.
+var ErrTooManyDigits = errors.New("more than 18 significant digits")
+
+// mostUnits bounds Units to 18 digits, so that a digit can be added without
+// overflow.
+const mostUnits = 999_999_999_999_999_999
 
 // ParseAmount reads a plain decimal number, optionally signed and optionally
 // with a decimal exponent: -1234.5, 3.183e-05. Marks of thousands and other
@@ -45,8 +54,12 @@ func ParseAmount(text string) (Amount, error) {
 			return Amount{}, fmt.Errorf("amount %q: want a decimal number such as 1234.50", text)
 		}
 		digits++
-		if units > (1<<63-1-9)/10 {
-			return Amount{}, fmt.Errorf("amount %q: more than 18 significant digits", text)
+		if units > mostUnits/10 {
+			// Zeros behind the point say nothing, however many they are.
+			if seenPoint && strings.Trim(mantissa[i:], "0") == "" {
+				break
+			}
+			return Amount{}, fmt.Errorf("amount %q: %w", text, ErrTooManyDigits)
 		}
 		units = units*10 + int64(c-'0')
 		if seenPoint {
@@ -58,8 +71,8 @@ func ParseAmount(text string) (Amount, error) {
 	}
 	decimals -= exponent
 	for decimals < 0 {
-		if units > (1<<63-1)/10 {
-			return Amount{}, fmt.Errorf("amount %q: more than 18 significant digits", text)
+		if units > mostUnits/10 {
+			return Amount{}, fmt.Errorf("amount %q: %w", text, ErrTooManyDigits)
 		}
 		units *= 10
 		decimals++
@@ -90,13 +103,30 @@ func (a Amount) MinorUnits(decimals int) (int64, bool) {
 		have--
 	}
 	for have < decimals {
-		if units > (1<<63-1)/10 || units < -(1<<63-1)/10 {
+		if units > mostUnits/10 || units < -mostUnits/10 {
 			return 0, false
 		}
 		units *= 10
 		have++
 	}
 	return units, true
+}
+
+// Plus is the exact sum; exact is false, and the sum meaningless, when it has
+// more than 18 digits.
+func (a Amount) Plus(b Amount) (sum Amount, exact bool) {
+	if a.Decimals < b.Decimals {
+		a, b = b, a
+	}
+	units, ok := b.MinorUnits(int(a.Decimals))
+	sum = Amount{a.Units + units, a.Decimals}
+	return sum, ok && sum.Units <= mostUnits && sum.Units >= -mostUnits
+}
+
+// Minus is the exact difference; exact is false, and the difference
+// meaningless, when it has more than 18 digits.
+func (a Amount) Minus(b Amount) (difference Amount, exact bool) {
+	return a.Plus(Amount{-b.Units, b.Decimals})
 }
 
 // Float is the double nearest to the amount.
@@ -214,4 +244,14 @@ func ParseTotal(text string) (*Total, error) {
 		return nil, fmt.Errorf("total %q: want a decimal number such as 1234.50", text)
 	}
 	return t, nil
+}
+
+// Equals tells whether the sum is exactly the amount.
+func (t *Total) Equals(a Amount) bool {
+	t.flush()
+	other := Total{decimals: t.decimals}
+	other.addScaled(big.NewInt(a.Units), int(a.Decimals))
+	mine := Total{decimals: other.decimals}
+	mine.addScaled(new(big.Int).Set(&t.units), t.decimals)
+	return mine.units.Cmp(&other.units) == 0
 }

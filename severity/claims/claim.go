@@ -27,14 +27,9 @@ type Claim struct {
 	Weight         float64        // > 0; 1 for a claim
 }
 
-// Incurred is paid plus outstanding; the sum is exact unless it leaves the 18
-// digits of an Amount, which ParseAmount admits for no amount of money.
-func (c *Claim) Incurred() Amount {
-	d := max(c.Paid.Decimals, c.Outstanding.Decimals)
-	paid, _ := c.Paid.MinorUnits(int(d))
-	outstanding, _ := c.Outstanding.MinorUnits(int(d))
-	return Amount{Units: paid + outstanding, Decimals: d}
-}
+// Incurred is paid plus outstanding; exact is false, and the sum meaningless,
+// when it has more than the 18 digits of an Amount.
+func (c *Claim) Incurred() (sum Amount, exact bool) { return c.Paid.Plus(c.Outstanding) }
 
 // Status is the claim's state at the valuation date.
 type Status uint8

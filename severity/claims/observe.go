@@ -65,7 +65,7 @@ const (
 	NoRemark         Remark = 0
 	EqualsDeductible Remark = 1 << iota // the loss equals its deductible
 	AboveCover                          // a ground-up amount above the top of cover: known only to be at least the top
-	FlagContradicts                     // the file says the limit was not reached, the amount says it was
+	FlagContradicts                     // the file's flag says the limit was reached, or not, and the amount says otherwise
 )
 
 // GroundUp reconstructs what is known of the ground-up loss from an amount as
@@ -104,13 +104,16 @@ func (b Basis) GroundUp(amount float64, t Terms) (severity.Observation, Remark, 
 	if loss == deductible && deductible > 0 {
 		remark |= EqualsDeductible
 	}
-	if t.Reached == ReachedYes {
-		o.Censored = true
-		return o, remark, NoProblem
-	}
 	top, problem := b.top(t, deductible)
 	if problem != NoProblem {
 		return o, remark, problem
+	}
+	if t.Reached == ReachedYes {
+		o.Censored = true
+		if t.HasLimit && aboveByMoreThanRounding(top, loss) {
+			remark |= FlagContradicts
+		}
+		return o, remark, NoProblem
 	}
 	if loss < top {
 		return o, remark, NoProblem
@@ -148,7 +151,7 @@ func (b Basis) deductible(t Terms) (float64, Problem) {
 // a limit.
 func (b Basis) top(t Terms, deductible float64) (float64, Problem) {
 	if !t.HasLimit {
-		// A flag that says the limit was not reached needs no limit.
+		// A flag that says whether the limit was reached needs no limit.
 		if !b.MissingTerm.Limit && b.NoLimit == BlankRefused && t.Reached == ReachedNotStated {
 			return 0, LimitBlank
 		}
@@ -164,21 +167,50 @@ func (b Basis) top(t Terms, deductible float64) (float64, Problem) {
 	return top, NoProblem
 }
 
-// Observe is GroundUp for a claim as read, by its incurred amount (paid plus
-// outstanding), with its weight.
-func (b Basis) Observe(c *Claim) (severity.Observation, Remark, Problem) {
-	amount := c.Paid.Float()
-	if c.Outstanding.Units != 0 {
-		amount = c.Incurred().Float()
+// TermProblems lists every problem of the terms by themselves: the deductible
+// first, then the limit. GroundUp stops at the first; who reports to a user
+// wants all.
+func (b Basis) TermProblems(t Terms) []Problem {
+	var all []Problem
+	deductible, problem := b.deductible(t)
+	if problem != NoProblem {
+		all = append(all, problem)
+		deductible = 0
 	}
-	o, remark, problem := b.GroundUp(amount, Terms{
+	if _, problem := b.top(t, deductible); problem != NoProblem {
+		all = append(all, problem)
+	}
+	return all
+}
+
+// Terms are the claim's terms in money.
+func (c *Claim) Terms() Terms {
+	return Terms{
 		Deductible: c.Deductible.Float(), HasDeductible: c.HasDeductible,
 		Limit: c.Limit.Float(), HasLimit: c.HasLimit,
 		Type: c.DeductibleType, Reached: c.LimitReached,
-	})
+	}
+}
+
+// Observe is GroundUp for a claim as read, by its incurred amount (paid plus
+// outstanding), with its weight.
+func (b Basis) Observe(c *Claim) (severity.Observation, Remark, Problem) {
+	o, remark, problem := b.GroundUp(c.incurred(), c.Terms())
 	o.Weight = c.Weight
 	if problem == NoProblem && !(c.Weight > 0 && c.Weight <= math.MaxFloat64) {
 		problem = BadWeight
 	}
 	return o, remark, problem
+}
+
+// incurred is the double nearest to paid plus outstanding, or the sum of the
+// nearest doubles where the exact sum has more digits than an Amount.
+func (c *Claim) incurred() float64 {
+	if c.Outstanding.Units == 0 {
+		return c.Paid.Float()
+	}
+	if sum, exact := c.Incurred(); exact {
+		return sum.Float()
+	}
+	return c.Paid.Float() + c.Outstanding.Float()
 }

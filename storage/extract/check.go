@@ -326,7 +326,8 @@ func (r *Reader) observe() {
 	}
 	o, remark, problem := r.plan.Basis.Observe(c)
 	r.row.Observation = o
-	amount, field := c.Incurred(), r.amountField()
+	amount, _ := c.Incurred()
+	field := r.amountField()
 	value := []byte(amount.String())
 	limit, deductible := []byte(c.Limit.String()), []byte(c.Deductible.String())
 	switch problem {
