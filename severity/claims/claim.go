@@ -27,9 +27,12 @@ type Claim struct {
 	Weight         float64        // > 0; 1 for a claim
 }
 
-// Incurred is paid plus outstanding; exact is false, and the sum meaningless,
-// when it has more than the 18 digits of an Amount.
-func (c *Claim) Incurred() (sum Amount, exact bool) { return c.Paid.Plus(c.Outstanding) }
+// Incurred is paid plus outstanding, exact for every claim of a batch, whose
+// amounts are bounded so that they add up; see Amount.Plus for others.
+func (c *Claim) Incurred() Amount {
+	sum, _ := c.Paid.Plus(c.Outstanding)
+	return sum
+}
 
 // Status is the claim's state at the valuation date.
 type Status uint8

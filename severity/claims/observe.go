@@ -209,7 +209,7 @@ func (c *Claim) incurred() float64 {
 	if c.Outstanding.Units == 0 {
 		return c.Paid.Float()
 	}
-	if sum, exact := c.Incurred(); exact {
+	if sum, exact := c.Paid.Plus(c.Outstanding); exact {
 		return sum.Float()
 	}
 	return c.Paid.Float() + c.Outstanding.Float()

@@ -326,8 +326,7 @@ func (r *Reader) observe() {
 	}
 	o, remark, problem := r.plan.Basis.Observe(c)
 	r.row.Observation = o
-	amount, _ := c.Incurred()
-	field := r.amountField()
+	amount, field := c.Incurred(), r.amountField()
 	value := []byte(amount.String())
 	limit, deductible := []byte(c.Limit.String()), []byte(c.Deductible.String())
 	switch problem {
