@@ -3,7 +3,6 @@ package evidence
 import (
 	"math"
 	"sort"
-	"sync"
 )
 
 // state is where a walk through the rows stands: between two distinct losses.
@@ -100,83 +99,6 @@ func (s *Sample) next(c *state, p *step) bool {
 	return true
 }
 
-// block is a stretch of rows between two distinct losses: where the walk stood
-// before it, and what the rows and the curve add up to in it.
-type block struct {
-	start    state
-	integral float64 // of the product-limit estimate from start.loss to the block's last loss
-	spread   spread  // of the losses of its rows
-	censored int     // rows before the block
-}
-
-const blockRows = 1024
-
-// measure walks the rows once and keeps what later answers start from.
-func (s *Sample) measure() {
-	s.collapse = math.NaN()
-	bounds := s.blockBounds()
-	s.blocks = make([]block, len(bounds)-1)
-	var wait sync.WaitGroup
-	wait.Go(func() {
-		for i := range s.blocks {
-			s.blocks[i].spread = s.spreadOf(bounds[i], bounds[i+1])
-		}
-	})
-	sketch := s.newSketch()
-	c := s.start()
-	var p step
-	half := false // the curve has come down to one half
-	for i := range s.blocks {
-		b := &s.blocks[i]
-		b.start, b.censored = c, c.row-s.uncensored
-		for c.row < bounds[i+1] {
-			from := c.loss
-			s.next(&c, &p)
-			b.integral += p.before * (p.loss - from)
-			s.uncensored += p.exact
-			sketch.take(&p, &c)
-			if half && c.survival > 0 || p.events <= 0 {
-				continue
-			}
-			if !half && (s.smallestRisk.AtRisk == 0 || p.atRisk < s.smallestRisk.AtRisk) {
-				s.smallestRisk = point(p, c)
-			}
-			half = half || c.survival <= 0.5
-			if c.survival == 0 && p.before > 0 && c.row < len(s.keys) {
-				s.collapse, s.hasCollapse = p.loss, true
-			}
-		}
-	}
-	wait.Wait()
-	s.exactMarks, s.censoredMarks = sketch.marks[0], sketch.marks[1]
-	s.end, s.largestLoss = c, c.loss
-	for i := len(s.keys) - 1; i >= 0; i-- {
-		if s.keys[i]&1 == 0 {
-			s.largest = rowLoss(s.keys[i])
-			break
-		}
-	}
-}
-
-// blockBounds are the first rows of the blocks, and the number of rows: no
-// loss lies in two blocks.
-func (s *Sample) blockBounds() []int {
-	bounds := make([]int, 1, len(s.keys)/blockRows+2)
-	for at := blockRows; at < len(s.keys); at += blockRows {
-		last := s.keys[at-1] >> 1
-		for at < len(s.keys) && s.keys[at]>>1 == last {
-			at++
-		}
-		if at < len(s.keys) {
-			bounds = append(bounds, at)
-		}
-	}
-	if len(s.keys) > 0 {
-		bounds = append(bounds, len(s.keys))
-	}
-	return bounds
-}
-
 func point(p step, after state) ProductLimitPoint {
 	return ProductLimitPoint{p.loss, p.atRisk, p.events, after.survival, math.Sqrt(after.variance)}
 }
@@ -224,6 +146,14 @@ func (s *Sample) ProductLimit() []ProductLimitPoint {
 		}
 	}
 	return points
+}
+
+// stepAt is the step at a loss that has one.
+func (s *Sample) stepAt(loss float64) ProductLimitPoint {
+	c := s.at(math.Nextafter(loss, 0))
+	var p step
+	s.next(&c, &p)
+	return point(p, c)
 }
 
 // SurvivalAt is the estimate of S(x)/S(lowest threshold), x >= 0: 1 below the

@@ -85,6 +85,26 @@ func (k *sketch) take(p *step, c *state) {
 	}
 }
 
+// leash is how far the walk may go before a mark is to be kept or the estimate
+// comes down to one half.
+func (k *sketch) leash(c *state, r *leastRisk) leash {
+	here := cell{k.loss.at, k.survival.at}
+	if here != k.last[0] || c.loss >= k.from[0] || c.survival == 0 {
+		return leash{} // nothing may be passed
+	}
+	l := leash{loss: min(k.loss.next(), k.from[0]), survival: -k.survival.next(), censored: here == k.last[1]}
+	if c.loss >= k.from[1] {
+		l.censored = false
+	} else {
+		l.loss = min(l.loss, k.from[1])
+	}
+	if !r.half {
+		l.survival = max(l.survival, 0.5)
+	}
+	l.survival = max(l.survival, 0)
+	return l
+}
+
 func (k *sketch) keep(kind int, here cell, p *step, c *state) {
 	if here == k.last[kind] && p.loss < k.from[kind] {
 		return

@@ -43,6 +43,14 @@ func (r *ruler) read(x float64) int {
 	return r.at
 }
 
+// next is where the step last read ends; +Inf for the last one.
+func (r *ruler) next() float64 {
+	if r.at == len(r.bounds) {
+		return math.Inf(1)
+	}
+	return r.bounds[r.at]
+}
+
 type cell struct{ x, y int }
 
 // Thin drops points that the eye cannot tell from one before them: at gives
