@@ -45,12 +45,3 @@ func readType(cell []byte) (claims.DeductibleType, bool) {
 	}
 	return claims.Ordinary, false
 }
-
-// totalsWord tells that a cell names a row of totals.
-func totalsWord(cell []byte) bool {
-	switch letters(string(cell)) {
-	case "total", "totals", "sum", "grandtotal", "subtotal", "subtotals", "totalclaims", "sumtotal":
-		return true
-	}
-	return false
-}

@@ -1,6 +1,8 @@
 package extract
 
 import (
+	"bytes"
+	"errors"
 	"fmt"
 	"strconv"
 
@@ -78,16 +80,16 @@ func atoi(b []byte) int {
 const acceptedDates = "accepted are 2025-06-30, 20250630 and, once their order is decided, 30/06/2025 or 06/30/2025 with / . or - and a year of four digits"
 
 // readDate turns a trimmed, non-empty cell into a date.
-func readDate(cell []byte, f Format) (claims.Date, error) {
-	if f.Kind == Workbook {
-		if serial, err := strconv.ParseFloat(string(cell), 64); err == nil {
-			return fromSerial(serial)
-		}
-	}
+func readDate(cell []byte, f Format, from1904 bool) (claims.Date, error) {
 	p, ok := splitDate(cell)
 	switch {
+	case !ok && f.Kind == Workbook:
+		if serial, err := strconv.ParseFloat(string(cell), 64); err == nil {
+			return fromSerial(serial, from1904)
+		}
+		return 0, errors.New(noDate(cell))
 	case !ok:
-		return 0, fmt.Errorf("no date; %s", acceptedDates)
+		return 0, errors.New(noDate(cell))
 	case p.yearFirst:
 		return dateOf(p.a, p.b, p.c)
 	case f.DateOrder == DayFirst:
@@ -98,6 +100,29 @@ func readDate(cell []byte, f Format) (claims.Date, error) {
 	return 0, fmt.Errorf("day or month may come first and it is not decided which; %s", acceptedDates)
 }
 
+// noDate says what a cell that is no date looks like.
+func noDate(cell []byte) string {
+	switch {
+	case twoDigitYear(cell):
+		return "the year has two digits, and the century cannot be told; export it with four; " + acceptedDates
+	case len(cell) == 5 && digitsOnly(cell):
+		return "a number such as spreadsheets keep for a date; export the column as dates; " + acceptedDates
+	}
+	return "no date; " + acceptedDates
+}
+
+// twoDigitYear tells that a cell is a date but for a year of two digits:
+// 03/04/25.
+func twoDigitYear(cell []byte) bool {
+	numbers := bytes.FieldsFunc(cell, func(c rune) bool { return c == '/' || c == '-' || c == '.' })
+	for _, n := range numbers {
+		if len(n) > 2 || !digitsOnly(n) {
+			return false
+		}
+	}
+	return len(numbers) == 3
+}
+
 func dateOf(year, month, day int) (claims.Date, error) {
 	d, err := claims.NewDate(year, month, day)
 	if err != nil {
@@ -106,12 +131,24 @@ func dateOf(year, month, day int) (claims.Date, error) {
 	return d, nil
 }
 
-// fromSerial reads the day number of a workbook, 1900 system: 61 is
-// 1900-03-01; earlier numbers are off by the day that never was, and refused.
-func fromSerial(serial float64) (claims.Date, error) {
+var (
+	march1900, _   = claims.NewDate(1900, 3, 1)
+	january1904, _ = claims.NewDate(1904, 1, 1)
+)
+
+// fromSerial reads the day number of a workbook (ECMA-376 part 1, 18.17.4.1).
+// In the system of 1900 number 61 is 1900-03-01; earlier numbers are off by
+// the day that never was, and refused. In that of 1904 number 0 is its first
+// day. The time of day is left out.
+func fromSerial(serial float64, from1904 bool) (claims.Date, error) {
+	if from1904 {
+		if !(serial >= 0 && serial < 2957004) {
+			return 0, fmt.Errorf("a day number outside 1904-01-01 to 9999-12-31; %s", acceptedDates)
+		}
+		return january1904 + claims.Date(int(serial)), nil
+	}
 	if !(serial >= 61 && serial < 2958466) {
 		return 0, fmt.Errorf("a day number outside 1900-03-01 to 9999-12-31; %s", acceptedDates)
 	}
-	first, _ := claims.NewDate(1900, 3, 1)
-	return first + claims.Date(int(serial)-61), nil
+	return march1900 + claims.Date(int(serial)-61), nil
 }

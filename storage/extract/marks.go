@@ -62,7 +62,7 @@ type markVotes struct {
 }
 
 func (v *markVotes) cast(cell string) {
-	body, _ := unsigned([]byte(cell))
+	body, _, _ := unsigned([]byte(cell))
 	text := string(body)
 	if strings.ContainsAny(text, " \u00a0\u202f\u2009") {
 		v.space++

@@ -3,6 +3,7 @@ package extract
 import (
 	"bytes"
 	"errors"
+	"unicode"
 	"unicode/utf8"
 
 	"spillway/severity/claims"
@@ -28,77 +29,110 @@ var (
 	errThousands = errors.New("the marks of thousands stand out of place for this file's style")
 )
 
+// amountNotes are what an amount's cell says beside the amount.
+type amountNotes struct {
+	scientific bool   // written in scientific notation
+	rounded    bool   // of more digits than an amount holds
+	currency   string // a currency's code or sign in the cell
+}
+
 // read turns a trimmed, non-empty cell into an amount: signs before or after,
-// accountants' brackets, a currency sign or code at either end. scientific
-// tells that the cell was in scientific notation.
-func (r *amountReader) read(cell []byte) (a claims.Amount, scientific bool, err error) {
-	if a, ok := plain(cell, r.decimal); ok {
-		return a, false, nil
-	}
-	body, negative := unsigned(cell)
+// accountants' brackets, a currency sign or code at either end. After an
+// ErrTooManyDigits scratch holds the number in plain form.
+func (r *amountReader) read(cell []byte) (a claims.Amount, notes amountNotes, err error) {
+	body, negative, code := unsigned(cell)
+	notes.currency = code
 	r.scratch = r.scratch[:0]
 	if negative {
 		r.scratch = append(r.scratch, '-')
 	}
+	if notes.scientific, err = r.plainForm(body); err != nil {
+		return a, notes, err
+	}
+	a, err = claims.ParseAmount(string(r.scratch))
+	return a, notes, err
+}
+
+// plainForm appends the number to scratch without marks of thousands and with
+// a decimal point.
+func (r *amountReader) plainForm(body []byte) (scientific bool, err error) {
 	digits, group, groups := 0, 0, false // group: digits since the last mark of thousands
 	for i := 0; i < len(body); {
-		c, width := utf8.DecodeRune(body[i:])
-		b := byte(0)
-		switch {
-		case c < utf8.RuneSelf:
-			b = byte(c)
-		case c == '\u00a0' || c == '\u202f' || c == '\u2009':
-			b = ' '
-		case c == '\u2019':
-			b = '\''
-		}
-		i += width
+		b, width := mark(body[i:])
 		switch {
 		case b >= '0' && b <= '9':
 			r.scratch = append(r.scratch, b)
 			digits++
 			group++
-		case b == r.decimal && b != 0:
+		case b == r.decimal:
 			if groups && group != 3 {
-				return a, false, errThousands
+				return false, errThousands
 			}
 			r.scratch = append(r.scratch, '.')
-			groups = false
-			for j, d := range body[i:] {
-				if d < '0' || d > '9' {
-					if (d == 'e' || d == 'E') && digits > 0 {
-						return r.scientific(append(r.scratch, body[i+j:]...))
-					}
-					return a, false, errNoNumber
-				}
-				r.scratch = append(r.scratch, d)
-				digits++
-			}
-			i = len(body)
+			return r.behindPoint(body[i+width:], digits)
 		case r.thousands != 0 && b == r.thousands:
-			if digits == 0 || group > 3 || groups && group != 3 {
-				return a, false, errThousands
+			if group == 0 || group > 3 || groups && group != 3 {
+				return false, errThousands
 			}
 			groups, group = true, 0
-		case (b == 'e' || b == 'E') && digits > 0:
-			return r.scientific(append(r.scratch, body[i-1:]...))
+		case (b == 'e' || b == 'E') && digits > 0 && !groups:
+			return true, r.exponent(body[i:])
 		default:
-			return a, false, errNoNumber
+			return false, errNoNumber
 		}
+		i += width
 	}
 	if groups && group != 3 {
-		return a, false, errThousands
+		return false, errThousands
 	}
 	if digits == 0 {
-		return a, false, errNoNumber
+		return false, errNoNumber
 	}
-	a, err = claims.ParseAmount(string(r.scratch))
-	return a, false, err
+	return false, nil
 }
 
-func (r *amountReader) scientific(text []byte) (claims.Amount, bool, error) {
-	a, err := claims.ParseAmount(string(text))
-	return a, true, err
+// mark is the first byte of a text, with the spaces and apostrophes of
+// typography as the plain ones.
+func mark(text []byte) (b byte, width int) {
+	if text[0] < utf8.RuneSelf {
+		return text[0], 1
+	}
+	c, width := utf8.DecodeRune(text)
+	switch c {
+	case '\u00a0', '\u202f', '\u2009':
+		return ' ', width
+	case '\u2019':
+		return '\'', width
+	}
+	return 0xFF, width // none of the marks
+}
+
+func (r *amountReader) behindPoint(body []byte, digits int) (scientific bool, err error) {
+	for i, d := range body {
+		switch {
+		case d >= '0' && d <= '9':
+			r.scratch = append(r.scratch, d)
+			digits++
+		case (d == 'e' || d == 'E') && digits > 0:
+			return true, r.exponent(body[i:])
+		default:
+			return false, errNoNumber
+		}
+	}
+	if digits == 0 {
+		return false, errNoNumber
+	}
+	return false, nil
+}
+
+// exponent appends e, a sign and digits.
+func (r *amountReader) exponent(body []byte) error {
+	digits := bytes.TrimLeft(body[1:], "+-")
+	if len(body)-1-len(digits) > 1 || !digitsOnly(digits) {
+		return errNoNumber
+	}
+	r.scratch = append(r.scratch, body...)
+	return nil
 }
 
 // plain is the quick way for digits with at most one decimal mark.
@@ -131,46 +165,6 @@ func plain(cell []byte, decimal byte) (claims.Amount, bool) {
 	return claims.Amount{Units: units, Decimals: int16(decimals)}, true
 }
 
-// unsigned strips signs, brackets and currency signs.
-func unsigned(cell []byte) (body []byte, negative bool) {
-	body = trim(cell)
-	if n := len(body); n > 2 && body[0] == '(' && body[n-1] == ')' {
-		return stripCurrency(trim(body[1 : n-1])), true
-	}
-	body = stripCurrency(body)
-	for _, minus := range [][]byte{[]byte("-"), []byte("\u2212"), []byte("\u2013")} {
-		if rest, ok := bytes.CutPrefix(body, minus); ok {
-			return stripCurrency(trim(rest)), true
-		}
-		if rest, ok := bytes.CutSuffix(body, minus); ok {
-			return stripCurrency(trim(rest)), true
-		}
-	}
-	return bytes.TrimPrefix(body, []byte("+")), false
-}
-
-// stripCurrency takes a currency sign or a three-letter code off either end.
-func stripCurrency(body []byte) []byte {
-	for _, sign := range []string{"€", "$", "£", "¥", "₣"} {
-		body = bytes.TrimPrefix(body, []byte(sign))
-		body = bytes.TrimSuffix(body, []byte(sign))
-	}
-	isCode := func(b []byte) bool {
-		for _, c := range b {
-			if c < 'A' || c > 'Z' {
-				return false
-			}
-		}
-		return true
-	}
-	if n := len(body); n > 3 && isCode(body[:3]) {
-		body = body[3:]
-	} else if n > 3 && isCode(body[n-3:]) {
-		body = body[:n-3]
-	}
-	return trim(body)
-}
-
 // trim takes white space off both ends, no-break spaces included.
 func trim(cell []byte) []byte {
 	for len(cell) > 0 && (cell[0] == ' ' || cell[0] == '\t' || cell[0] == '\r' || cell[0] == '\n') {
@@ -180,21 +174,9 @@ func trim(cell []byte) []byte {
 		cell = cell[:n-1]
 	}
 	if len(cell) > 0 && (cell[0] >= utf8.RuneSelf || cell[len(cell)-1] >= utf8.RuneSelf) {
-		return bytes.TrimSpace(cell) // knows the spaces of Unicode
+		return bytes.TrimFunc(cell, func(r rune) bool {
+			return unicode.IsSpace(r) || r == '\ufeff' || r == '\u200b' // a byte order mark, a space of no width
+		})
 	}
 	return cell
-}
-
-// minorDigits are the decimals of currencies that do not have two (ISO 4217).
-var minorDigits = map[string]int8{
-	"BIF": 0, "CLP": 0, "DJF": 0, "GNF": 0, "ISK": 0, "JPY": 0, "KMF": 0, "KRW": 0, "PYG": 0, "RWF": 0, "UGX": 0,
-	"VND": 0, "VUV": 0, "XAF": 0, "XOF": 0, "XPF": 0, "BHD": 3, "IQD": 3, "JOD": 3, "KWD": 3, "LYD": 3, "OMR": 3, "TND": 3,
-}
-
-// MinorDigits is the number of decimals of a currency's minor unit.
-func MinorDigits(currency string) int8 {
-	if d, ok := minorDigits[currency]; ok {
-		return d
-	}
-	return 2
 }

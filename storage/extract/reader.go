@@ -2,7 +2,6 @@ package extract
 
 import (
 	"fmt"
-	"hash/maphash"
 	"io"
 	"slices"
 
@@ -17,13 +16,17 @@ type Reader struct {
 	in       source
 	header   []string
 	at       [fieldCount]int // column of each field, -1 for none
+	last     int             // the rightmost of these
 	amounts  amountReader
-	decimals int // of the currency; -1 for any
+	decimals int    // of the currency; -1 for any
+	currency string // stated by the basis, or the first that a cell names
 	row      Row
+	cells    [fieldCount][]byte // of the row, trimmed; nil where there is no column or no cell
+	money    [fieldCount]moneyCell
+	from1904 bool // day numbers count from 1904
 	tallies  tallies
 	words    map[string]string // texts that recur, kept once
-	ids      map[[2]uint64]struct{}
-	seeds    [2]maphash.Seed
+	ids      *idSet
 	err      error
 }
 
@@ -46,7 +49,6 @@ type Row struct {
 	Rejected    bool
 
 	cells [][]byte
-	key   [2]uint64 // of the claim id
 }
 
 // Cells copies the row's cells as they stand in the file.
@@ -65,26 +67,34 @@ func NewReader(file io.ReaderAt, size int64, plan Plan) (*Reader, error) {
 	if err != nil {
 		return nil, err
 	}
-	header, err := readHeader(in, plan.Format.HeaderLine)
-	if err == nil {
-		var at map[Field]int
-		if at, err = plan.resolve(header); err == nil {
-			return newReader(plan, in, header, at), nil
-		}
+	r, err := newReader(plan, in)
+	if err != nil {
+		in.Close()
+		return nil, err
 	}
-	in.Close()
-	return nil, err
+	return r, nil
 }
 
-func newReader(plan Plan, in source, header []string, at map[Field]int) *Reader {
+func newReader(plan Plan, in source) (*Reader, error) {
+	header, err := readHeader(in, plan.Format.HeaderLine)
+	if err != nil {
+		return nil, err
+	}
+	at, err := plan.resolve(header)
+	if err != nil {
+		return nil, err
+	}
 	r := &Reader{
 		plan: plan, in: in, header: header,
 		amounts:  newAmountReader(plan.Format),
 		decimals: -1,
+		currency: plan.Basis.Currency,
 		words:    map[string]string{},
-		ids:      map[[2]uint64]struct{}{},
-		seeds:    [2]maphash.Seed{maphash.MakeSeed(), maphash.MakeSeed()},
-		tallies:  tallies{groups: map[groupKey]int{}, marks: map[string]int{}},
+		ids:      newIDSet(),
+		tallies:  tallies{groups: map[groupKey]int{}},
+	}
+	if book, ok := in.(*workbook); ok {
+		r.from1904 = book.from1904
 	}
 	if plan.Basis.Currency != "" {
 		r.decimals = int(MinorDigits(plan.Basis.Currency))
@@ -93,17 +103,57 @@ func newReader(plan Plan, in source, header []string, at map[Field]int) *Reader 
 		r.at[i] = -1
 		if column, ok := at[f]; ok {
 			r.at[i] = column
+			r.last = max(r.last, column)
 			if f.isMoney() {
-				r.tallies.money = append(r.tallies.money, moneyTotals{field: f, column: header[column]})
+				r.tallies.money = append(r.tallies.money, moneyTotals{field: f, index: i, column: header[column]})
 			}
 		}
 	}
 	// A term that the extract has no column for is no term of its claims.
 	r.plan.Basis.MissingTerm = claims.MissingColumns{
-		Deductible: r.at[fieldIndex[Deductible]] < 0,
-		Limit:      r.at[fieldIndex[Limit]] < 0,
+		Deductible: r.at[deductibleAt] < 0,
+		Limit:      r.at[limitAt] < 0,
 	}
-	return r
+	return r, r.wantDateOrder()
+}
+
+// wantDateOrder refuses a file whose dates need an order that nobody has
+// decided, before any row is read. A few such dates among others that begin
+// with the year become findings of their rows instead.
+func (r *Reader) wantDateOrder() error {
+	if r.plan.Format.DateOrder != OrderUndecided || r.at[lossDateAt] < 0 && r.at[reportDateAt] < 0 && r.at[closeDateAt] < 0 {
+		return nil
+	}
+	ahead := lookAhead(r.in, studiedRows)
+	r.in = ahead
+	for _, at := range dateFields {
+		column := r.at[at]
+		if column < 0 {
+			continue
+		}
+		inNeed, others, line, example := 0, 0, 0, ""
+		for _, row := range ahead.rows {
+			if column >= len(row.cells) {
+				continue
+			}
+			cell := trim(row.cells[column])
+			if p, ok := splitDate(cell); !ok || p.yearFirst {
+				if len(cell) > 0 {
+					others++
+				}
+				continue
+			}
+			if inNeed++; inNeed == 1 {
+				line, example = row.line, string(cell)
+			}
+		}
+		if inNeed > others {
+			return &FileError{Line: line,
+				Found:    fmt.Sprintf("a date %q in column %q, and it is not decided whether the day or the month comes first", example, r.header[column]),
+				Accepted: "choose day first or month first"}
+		}
+	}
+	return nil
 }
 
 // Basis is the plan's basis, with the columns that the extract does not have.
@@ -144,7 +194,7 @@ func (r *Reader) Next() bool {
 			return false
 		}
 		if blank(cells) {
-			r.tallies.repair("blank line passed over")
+			r.tallies.repairs[blankLine]++
 			continue
 		}
 		r.row = Row{Line: line, cells: cells, Findings: r.row.Findings[:0]}
@@ -185,54 +235,12 @@ func (r *Reader) Report() *Report {
 			Read: m.read.String(), Accepted: m.accepted.String(), Rejected: m.rejected.String(),
 		})
 	}
-	for what, count := range r.tallies.marks {
-		report.Repairs = append(report.Repairs, Repair{What: what, Count: count})
+	done := r.tallies.repairs
+	for kind, count := range r.in.repaired() {
+		done[kind] += count
 	}
-	slices.SortFunc(report.Repairs, func(a, b Repair) int { return b.Count - a.Count })
+	report.Repairs = done.list()
 	return &report
-}
-
-// cell is the trimmed cell of a field; nil where the field has no column or
-// the row ends before it.
-func (r *Reader) cell(f int) []byte {
-	column := r.at[f]
-	if column < 0 || column >= len(r.row.cells) {
-		return nil
-	}
-	raw := r.row.cells[column]
-	cell := trim(raw)
-	if len(cell) != len(raw) {
-		r.tallies.repair("white space around a value left out")
-	}
-	return cell
-}
-
-func (r *Reader) column(f Field) string {
-	if c := r.at[fieldIndex[f]]; c >= 0 {
-		return r.header[c]
-	}
-	return string(f)
-}
-
-func (r *Reader) find(f Field, value []byte, rule Rule, effect Effect, message string) {
-	r.row.Findings = append(r.row.Findings, Finding{
-		Line: r.row.Line, Column: r.column(f), Value: string(value), Rule: rule, Effect: effect, Message: message,
-	})
-	if effect == Blocks {
-		r.row.Rejected = true
-	}
-}
-
-// text keeps one copy of a recurring text.
-func (r *Reader) text(cell []byte) string {
-	if word, ok := r.words[string(cell)]; ok {
-		return word
-	}
-	word := string(cell)
-	if len(r.words) < 1<<16 {
-		r.words[word] = word
-	}
-	return word
 }
 
 // account enters the checked row into the report.
@@ -243,9 +251,6 @@ func (r *Reader) account() {
 		report.Rejected++
 	} else {
 		report.Accepted++
-		if r.row.key != [2]uint64{} {
-			r.ids[r.row.key] = struct{}{}
-		}
 		if r.row.Observation.Censored {
 			report.Censored++
 		} else {

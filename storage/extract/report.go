@@ -50,18 +50,12 @@ type FindingGroup struct {
 // counts all.
 const FindingsKept = 200
 
-// Repair is something that was put right in reading without a finding.
-type Repair struct {
-	What  string `json:"what"`
-	Count int    `json:"count"`
-}
-
 // tallies are a report in the making.
 type tallies struct {
-	report Report
-	groups map[groupKey]int
-	money  []moneyTotals
-	marks  map[string]int
+	report  Report
+	groups  map[groupKey]int
+	money   []moneyTotals
+	repairs repairs
 }
 
 type groupKey struct {
@@ -72,6 +66,7 @@ type groupKey struct {
 
 type moneyTotals struct {
 	field                    Field
+	index                    int // of field
 	column                   string
 	read, accepted, rejected claims.Total
 	unreadable               int
@@ -91,8 +86,6 @@ func (t *tallies) finding(f Finding) {
 		g.First = append(g.First, f)
 	}
 }
-
-func (t *tallies) repair(what string) { t.marks[what]++ }
 
 // Findings counts all findings with the given effect.
 func (r *Report) Findings(e Effect) int {

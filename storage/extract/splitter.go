@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"fmt"
 	"io"
+	"unicode/utf8"
 )
 
 // maxRow bounds one row, quoted newlines included: a missing closing quote
@@ -11,29 +12,33 @@ import (
 const maxRow = 4 << 20
 
 // splitter cuts delimited text (RFC 4180, any single-byte delimiter) into
-// rows without copying what needs no unquoting.
+// rows without copying what needs no unquoting. A quote counts only at the
+// beginning of a cell; elsewhere it is part of the value.
 type splitter struct {
 	in        io.Reader
 	delimiter byte
+	newline   byte // \n, or \r in files that have no \n
+	settled   bool // newline is proven
 	buffer    []byte
 	from, to  int // unread part of buffer
 	ended     bool
 	line      int // of the row to come
 	cells     [][]byte
 	unquoted  []byte
+	scan      quoteScan
+	marks     repairs
 }
 
 func newSplitter(in io.Reader, delimiter byte) *splitter {
-	return &splitter{in: in, delimiter: delimiter, buffer: make([]byte, 1<<18), line: 1}
+	return &splitter{in: in, delimiter: delimiter, newline: '\n', buffer: make([]byte, 1<<18), line: 1}
 }
 
 func (s *splitter) Close() error { return nil }
 
+func (s *splitter) repaired() repairs { return s.marks }
+
 // fill reads more behind the unread part.
 func (s *splitter) fill() error {
-	if s.ended {
-		return io.EOF
-	}
 	if s.from > 0 {
 		copy(s.buffer, s.buffer[s.from:s.to])
 		s.from, s.to = 0, s.to-s.from
@@ -55,92 +60,205 @@ func (s *splitter) fill() error {
 }
 
 func (s *splitter) next() ([][]byte, int, error) {
-	line := s.line
-	scanned := 0 // bytes of the unread part known to hold no end of row
-	inQuotes := false
-	for {
+	s.scan = quoteScan{delimiter: s.delimiter}
+	lines := 0 // newlines inside quotes
+	done := 0  // bytes of the row that scan has seen; a newline precedes
+	for searched := 0; ; {
 		part := s.buffer[s.from:s.to]
-		// A newline ends the row unless an odd number of quotes precedes it.
-		for {
-			i := bytes.IndexByte(part[scanned:], '\n')
-			if i < 0 {
-				break
-			}
-			inQuotes = inQuotes != (bytes.Count(part[scanned:scanned+i], quote)%2 == 1)
-			scanned += i + 1
-			s.line++
-			if !inQuotes {
-				row := part[:scanned-1]
-				s.from += scanned
-				return s.split(row), line, nil
-			}
+		i := bytes.IndexByte(part[searched:], s.newline)
+		if i < 0 && s.crOnly(part) {
+			continue
 		}
-		if s.ended {
-			if len(part) == 0 {
-				return nil, line, io.EOF
+		if i >= 0 {
+			s.settled = true
+			end := searched + i
+			if s.scan.over(part[done:end]) {
+				lines++
+				done, searched = end+1, end+1
+				continue
 			}
-			inQuotes = inQuotes != (bytes.Count(part[scanned:], quote)%2 == 1)
-			if inQuotes {
-				return nil, line, &FileError{Line: line, Found: "a quote that is opened and never closed", Accepted: "every opening quote needs a closing one"}
+			s.from += end + 1
+			return s.row(part[:end], lines)
+		}
+		searched = len(part)
+		if !s.ended {
+			if err := s.fill(); err != nil {
+				return nil, s.line, err
 			}
-			s.from = s.to
-			s.line++
-			return s.split(part), line, nil
+			continue
 		}
-		if inQuotes = inQuotes != (bytes.Count(part[scanned:], quote)%2 == 1); len(part) > scanned {
-			scanned = len(part)
+		if len(part) == 0 {
+			return nil, s.line, io.EOF
 		}
-		if err := s.fill(); err != nil {
-			return nil, line, err
+		if s.scan.over(part[done:]) {
+			return nil, s.line, &FileError{Line: s.line, Found: "a quote that is opened and never closed", Accepted: "every opening quote needs a closing one"}
 		}
+		s.from = s.to
+		return s.row(part, lines)
 	}
 }
 
-var quote = []byte{'"'}
+// crOnly settles, where a whole buffer shows no newline, that lines end in a
+// carriage return alone.
+func (s *splitter) crOnly(part []byte) bool {
+	if s.settled || !s.ended && len(part) < len(s.buffer) || bytes.IndexByte(part, '\r') < 0 {
+		return false
+	}
+	s.settled, s.newline = true, '\r'
+	return true
+}
+
+// row accounts for a whole row and cuts it.
+func (s *splitter) row(row []byte, quotedLines int) ([][]byte, int, error) {
+	line := s.line
+	s.line += 1 + quotedLines
+	if quotedLines > 0 {
+		s.marks[quotedNewline]++
+	}
+	if bytes.IndexByte(row, 0) >= 0 {
+		return nil, line, &FileError{Line: line, Found: "a byte of zero, which no text has", Accepted: "choose the encoding in which the file is written: utf-8, utf-16le, utf-16be or windows-1252"}
+	}
+	if !utf8.Valid(row) {
+		return nil, line, &FileError{Line: line, Found: "bytes that are no UTF-8 text", Accepted: "choose the encoding in which the file is written: utf-8, utf-16le, utf-16be or windows-1252"}
+	}
+	return s.split(row), line, nil
+}
 
 // split cuts one row, without its newline, into cells.
 func (s *splitter) split(row []byte) [][]byte {
 	row = bytes.TrimSuffix(row, []byte{'\r'})
 	s.cells = s.cells[:0]
-	if bytes.IndexByte(row, '"') < 0 {
-		for {
-			i := bytes.IndexByte(row, s.delimiter)
-			if i < 0 {
-				s.cells = append(s.cells, row)
-				return s.cells
-			}
-			s.cells = append(s.cells, row[:i])
-			row = row[i+1:]
-		}
-	}
+	quoted := bytes.IndexByte(row, '"') >= 0
 	s.unquoted = s.unquoted[:0]
 	for {
-		start := len(s.unquoted)
-		i := 0
-		if trimmed := bytes.TrimLeft(row, " "); len(trimmed) > 0 && trimmed[0] == '"' {
-			i = len(row) - len(trimmed) + 1
-			for i < len(row) {
-				if row[i] == '"' {
-					if i+1 < len(row) && row[i+1] == '"' {
-						i++
-					} else {
-						i++
-						break
-					}
+		if quoted {
+			if opening := openingQuote(row); opening >= 0 {
+				cell, rest, more := s.unquote(row[opening+1:])
+				s.cells = append(s.cells, cell)
+				if !more {
+					return s.cells
 				}
-				s.unquoted = append(s.unquoted, row[i])
-				i++
+				row = rest
+				continue
 			}
 		}
-		// Whatever follows a closing quote up to the delimiter is kept.
-		for i < len(row) && row[i] != s.delimiter {
-			s.unquoted = append(s.unquoted, row[i])
-			i++
+		i := bytes.IndexByte(row, s.delimiter)
+		cell := row
+		if i >= 0 {
+			cell = row[:i]
 		}
-		s.cells = append(s.cells, s.unquoted[start:len(s.unquoted):len(s.unquoted)])
-		if i >= len(row) {
+		if quoted && bytes.IndexByte(cell, '"') >= 0 {
+			s.marks[strayQuote]++
+		}
+		s.cells = append(s.cells, cell)
+		if i < 0 {
 			return s.cells
 		}
 		row = row[i+1:]
 	}
+}
+
+// openingQuote is the place of the quote that opens a cell, or -1.
+func openingQuote(cell []byte) int {
+	for i, c := range cell {
+		if c == '"' {
+			return i
+		}
+		if c != ' ' {
+			break
+		}
+	}
+	return -1
+}
+
+// unquote reads a cell behind its opening quote. What follows the closing
+// quote up to the delimiter is kept.
+func (s *splitter) unquote(row []byte) (cell, rest []byte, more bool) {
+	start := len(s.unquoted)
+	for {
+		i := bytes.IndexByte(row, '"') // there is one: the row is whole
+		if i < 0 {
+			i = len(row)
+		}
+		s.unquoted = append(s.unquoted, row[:i]...)
+		row = row[min(i+1, len(row)):]
+		if len(row) == 0 || row[0] != '"' {
+			break
+		}
+		s.unquoted = append(s.unquoted, '"')
+		row = row[1:]
+	}
+	i := bytes.IndexByte(row, s.delimiter)
+	tail := row
+	if i >= 0 {
+		tail, rest, more = row[:i], row[i+1:], true
+	}
+	if len(bytes.TrimRight(tail, " ")) > 0 {
+		s.marks[strayQuote]++
+		s.unquoted = append(s.unquoted, tail...)
+	}
+	return s.unquoted[start:len(s.unquoted):len(s.unquoted)], rest, more
+}
+
+// quoteScan follows quotes through a row, piece by piece.
+type quoteScan struct {
+	delimiter byte
+	state     quoteState
+}
+
+type quoteState uint8
+
+const (
+	atCell   quoteState = iota // at the beginning of a cell
+	inPlain                    // in or behind a value, to the delimiter
+	inQuotes                   // behind an opening quote
+	atQuote                    // behind a quote that closes, unless another follows
+)
+
+// over goes over one more piece of the row and tells whether it ends inside
+// quotes, so that a newline there belongs to the value.
+func (q *quoteScan) over(piece []byte) bool {
+	if q.state != inQuotes && bytes.IndexByte(piece, '"') < 0 {
+		q.state = inPlain
+		return false
+	}
+	for len(piece) > 0 {
+		switch q.state {
+		case inPlain:
+			i := bytes.IndexByte(piece, q.delimiter)
+			if i < 0 {
+				return false
+			}
+			piece = piece[i+1:]
+			q.state = atCell
+			continue
+		case inQuotes:
+			i := bytes.IndexByte(piece, '"')
+			if i < 0 {
+				return true
+			}
+			piece = piece[i+1:]
+			q.state = atQuote
+			continue
+		case atCell:
+			switch {
+			case piece[0] == '"':
+				q.state = inQuotes
+			case piece[0] == q.delimiter:
+			case piece[0] != ' ':
+				q.state = inPlain
+			}
+		case atQuote:
+			switch piece[0] {
+			case '"':
+				q.state = inQuotes
+			case q.delimiter:
+				q.state = atCell
+			default:
+				q.state = inPlain
+			}
+		}
+		piece = piece[1:]
+	}
+	return q.state == inQuotes
 }

@@ -22,7 +22,11 @@ type workbook struct {
 	rows  *excelize.Rows
 	line  int
 	cells [][]byte
+
+	from1904 bool // day numbers count from 1904-01-01
 }
+
+func (w *workbook) repaired() repairs { return repairs{} }
 
 func openFile(file io.ReaderAt, size int64) (*excelize.File, error) {
 	f, err := excelize.OpenReader(io.NewSectionReader(file, 0, size), excelize.Options{
@@ -61,7 +65,11 @@ func openWorkbook(file io.ReaderAt, size int64, sheet string) (*workbook, error)
 		}
 		return nil, &FileError{Found: fmt.Sprintf("sheet %q cannot be read (%v)", sheet, err), Accepted: "accepted are XLSX workbooks"}
 	}
-	return &workbook{file: f, rows: rows}, nil
+	properties, err := f.GetWorkbookProps()
+	if err != nil {
+		return nil, errors.Join(err, rows.Close(), f.Close())
+	}
+	return &workbook{file: f, rows: rows, from1904: properties.Date1904 != nil && *properties.Date1904}, nil
 }
 
 func (w *workbook) next() ([][]byte, int, error) {
