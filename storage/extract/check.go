@@ -253,7 +253,7 @@ func (r *Reader) checkStatus() {
 	if len(cell) == 0 {
 		return
 	}
-	status, known := readStatus(cell)
+	status, known := r.readStatus(cell)
 	if !known {
 		r.find(Status, cell, StatusUnknown, Warns, "not a status that is known; accepted are open, closed, reopened, closed without payment and usual codes for them; counted as not stated")
 		return

@@ -12,7 +12,7 @@ func (r *Reader) isTotals() string {
 	id := r.at[claimIDAt]
 	noID := id < 0 || len(r.cells[claimIDAt]) == 0
 	for i, cell := range r.row.cells {
-		if len(cell) == 0 || cell[0] < 'A' && cell[0] > ' ' || len(cell) > 64 {
+		if len(cell) == 0 || len(cell) > 64 || !beginsTotals[cell[0]] {
 			continue
 		}
 		switch {
@@ -29,6 +29,15 @@ func (r *Reader) isTotals() string {
 	}
 	return ""
 }
+
+// beginsTotals marks the bytes with which a cell that names totals can begin:
+// the first letters of the words, white space, and marks before them.
+var beginsTotals = func() (b [256]bool) {
+	for _, c := range []byte("tTsSgG \t\r\n*-(:.\xc2\xe2\xef") {
+		b[c] = true
+	}
+	return b
+}()
 
 // repeatsSums tells that every amount in the row is the sum of its column so
 // far, and that there is one.

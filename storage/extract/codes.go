@@ -20,9 +20,17 @@ var statusCodes = map[string]claims.Status{
 	"repudiated": claims.StatusNil, "closednil": claims.StatusNil,
 }
 
-func readStatus(cell []byte) (claims.Status, bool) {
-	s, ok := statusCodes[letters(string(cell))]
-	return s, ok && s != claims.StatusUnknown
+// readStatus is the status that a cell names; the spellings of a file recur
+// and are looked up once.
+func (r *Reader) readStatus(cell []byte) (claims.Status, bool) {
+	s, seen := r.statuses[string(cell)]
+	if !seen {
+		s = statusCodes[letters(string(cell))]
+		if len(r.statuses) < 256 {
+			r.statuses[string(cell)] = s
+		}
+	}
+	return s, s != claims.StatusUnknown
 }
 
 var flagWords = map[string]claims.Reached{

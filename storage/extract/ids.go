@@ -1,43 +1,58 @@
 package extract
 
-import "hash/maphash"
+import (
+	"bytes"
+	"hash/maphash"
+	"io"
+	"math/bits"
+)
 
 // idSet remembers claim ids by 128-bit hashes with seeds of its own, so that a
-// file cannot be made to collide: 16 bytes a slot, at most three slots in four
-// in use. It grows in 256 parts of which one is moved at a time, so that
-// growth does not double the memory.
+// file cannot be made to collide: 16 bytes a slot, at most four slots in five
+// in use. It grows in 64 parts of which one is moved at a time, so that growth
+// does not double the memory.
 type idSet struct {
 	seeds [2]maphash.Seed
-	parts [256]idPart
+	parts [64]idPart
 }
 
 type idPart struct {
-	slots [][2]uint64 // a power of two of them; zero is a free slot
+	slots [][2]uint64 // zero is a free slot
 	used  int
 }
 
-func newIDSet() *idSet {
-	return &idSet{seeds: [2]maphash.Seed{maphash.MakeSeed(), maphash.MakeSeed()}}
+// newIDSet makes a set with room for about so many ids.
+func newIDSet(expected int) *idSet {
+	s := &idSet{seeds: [2]maphash.Seed{maphash.MakeSeed(), maphash.MakeSeed()}}
+	if room := expected / len(s.parts) * 4 / 3; room > 16 {
+		for i := range s.parts {
+			s.parts[i].slots = make([][2]uint64, room)
+		}
+	}
+	return s
 }
 
 // add enters an id and tells whether it was there before.
 func (s *idSet) add(id []byte) (before bool) {
 	key := [2]uint64{maphash.Bytes(s.seeds[0], id), maphash.Bytes(s.seeds[1], id) | 1}
-	return s.parts[key[0]>>56].add(key)
+	return s.parts[key[1]>>58].add(key)
 }
 
 func (p *idPart) add(key [2]uint64) (before bool) {
-	if 4*(p.used+1) > 3*len(p.slots) {
+	if 5*(p.used+1) > 4*len(p.slots) {
 		old := p.slots
-		p.slots, p.used = make([][2]uint64, max(16, 2*len(old))), 0
+		p.slots, p.used = make([][2]uint64, max(16, len(old)*3/2)), 0
 		for _, k := range old {
 			if k != ([2]uint64{}) {
 				p.add(k)
 			}
 		}
 	}
-	mask := uint64(len(p.slots) - 1)
-	for i := key[0] & mask; ; i = (i + 1) & mask {
+	at, _ := bits.Mul64(key[0], uint64(len(p.slots)))
+	for i := int(at); ; i++ {
+		if i == len(p.slots) {
+			i = 0
+		}
 		switch p.slots[i] {
 		case key:
 			return true
@@ -47,4 +62,18 @@ func (p *idPart) add(key [2]uint64) (before bool) {
 			return false
 		}
 	}
+}
+
+// mostExpected bounds the room that is made before any id is seen.
+const mostExpected = 2 << 20
+
+// expectedRows estimates the rows of a text file from a piece of its middle.
+func expectedRows(file io.ReaderAt, size int64) int {
+	piece := make([]byte, min(size, 1<<16))
+	n, err := file.ReadAt(piece, (size-int64(len(piece)))/2)
+	if n == 0 || err != nil && err != io.EOF {
+		return 0
+	}
+	lines := bytes.Count(piece[:n], []byte{'\n'})
+	return int(min(int64(float64(lines)*float64(size)/float64(n)), mostExpected))
 }

@@ -26,6 +26,7 @@ type Reader struct {
 	from1904 bool // day numbers count from 1904
 	tallies  tallies
 	words    map[string]string // texts that recur, kept once
+	statuses map[string]claims.Status
 	ids      *idSet
 	err      error
 }
@@ -72,6 +73,11 @@ func NewReader(file io.ReaderAt, size int64, plan Plan) (*Reader, error) {
 		in.Close()
 		return nil, err
 	}
+	expected := 0
+	if plan.Format.Kind == Delimited && r.at[claimIDAt] >= 0 {
+		expected = expectedRows(file, size)
+	}
+	r.ids = newIDSet(expected)
 	return r, nil
 }
 
@@ -90,7 +96,7 @@ func newReader(plan Plan, in source) (*Reader, error) {
 		decimals: -1,
 		currency: plan.Basis.Currency,
 		words:    map[string]string{},
-		ids:      newIDSet(),
+		statuses: map[string]claims.Status{},
 		tallies:  tallies{groups: map[groupKey]int{}},
 	}
 	if book, ok := in.(*workbook); ok {
