@@ -49,25 +49,38 @@ func (f Field) isMoney() bool {
 type ColumnMap map[Field]string
 
 // headings are the words under which columns go about (common practice, no
-// source), letters and digits only, in lower case.
+// source), letters and digits only, in lower case. A word that is as often
+// the heading of something else (count, state, reported) is left to the user.
 var headings = map[Field][]string{
-	ClaimID:        {"claimid", "claim", "claimno", "claimnumber", "claimnr", "claimref", "claimreference", "id", "reference", "lossno", "lossnumber", "schadennummer", "sinistre"},
-	LossDate:       {"lossdate", "dateofloss", "accidentdate", "dateofaccident", "occurrencedate", "dateofoccurrence", "eventdate", "incidentdate", "dol"},
-	ReportDate:     {"reportdate", "reporteddate", "datereported", "dateofreport", "notificationdate", "notified", "datenotified", "notifieddate"},
-	CloseDate:      {"closedate", "closeddate", "dateclosed", "closingdate", "settlementdate", "settleddate", "datesettled"},
-	Status:         {"status", "claimstatus", "state", "openclosed"},
-	Business:       {"line", "lineofbusiness", "lob", "business", "class", "classofbusiness", "product", "branch"},
-	Segment:        {"segment", "subline", "subclass", "region", "territory", "portfolio", "segmentname"},
-	Paid:           {"paid", "paidtodate", "totalpaid", "paidloss", "paidamount", "amountpaid", "cumulativepaid", "grosspaid", "payments", "paidlosses"},
-	Outstanding:    {"outstanding", "os", "casereserve", "reserve", "outstandingreserve", "casereserves", "unpaid", "outstandingloss", "outstandingamount", "caseoutstanding"},
-	Incurred:       {"incurred", "totalincurred", "incurredloss", "incurredamount", "caseincurred", "reported", "grossincurred"},
-	Amount:         {"amount", "loss", "lossamount", "claimamount", "groundup", "grounduploss", "groundupamount", "severity", "size", "claimsize"},
-	Deductible:     {"deductible", "ded", "excess", "deductibleamount", "retention", "deductibleapplied", "policydeductible"},
-	Limit:          {"limit", "policylimit", "paymentlimit", "limitofliability", "suminsured", "limitamount", "maximumpayment", "topofcover", "coverlimit", "maxpayment"},
-	LimitReached:   {"limitreached", "censored", "atlimit", "limited", "cappedatlimit", "limitflag"},
-	DeductibleType: {"deductibletype", "typeofdeductible", "dedtype"},
-	Weight:         {"weight", "count", "claimcount", "frequency"},
-	Currency:       {"currency", "ccy", "cur", "currencycode", "originalcurrency"},
+	ClaimID: {"claimid", "claim", "claimno", "claimnumber", "claimnum", "claimnr", "claimref", "claimreference", "claimkey", "claimcode",
+		"id", "reference", "referenceno", "referencenumber", "lossno", "lossnumber", "lossid", "lossref", "fileno", "filenumber",
+		"schadennummer", "schadennr", "sinistre", "nosinistre", "numerosinistre"},
+	LossDate: {"lossdate", "dateofloss", "dol", "dateloss", "accidentdate", "dateofaccident", "occurrencedate", "dateofoccurrence",
+		"eventdate", "dateofevent", "incidentdate", "dateofincident", "schadendatum", "datesinistre"},
+	ReportDate: {"reportdate", "reporteddate", "datereported", "dateofreport", "notificationdate", "dateofnotification", "notifieddate",
+		"datenotified", "reportingdate", "advicedate", "meldedatum"},
+	CloseDate: {"closedate", "closeddate", "dateclosed", "closingdate", "closuredate", "dateofclosure", "settlementdate", "settleddate",
+		"datesettled", "dateofsettlement", "finalisationdate"},
+	Status:   {"status", "claimstatus", "claimstate", "openclosed", "statuscode", "statusofclaim"},
+	Business: {"line", "lineofbusiness", "businessline", "lob", "business", "class", "classofbusiness", "businessclass", "product", "branch"},
+	Segment:  {"segment", "subline", "subclass", "region", "territory", "portfolio", "segmentname"},
+	Paid: {"paid", "paidtodate", "totalpaid", "paidtotal", "paidloss", "paidlosses", "losspaid", "paidamount", "amountpaid", "paidclaims",
+		"claimspaid", "cumulativepaid", "cumulativepaidloss", "grosspaid", "paidgross", "payment", "payments", "totalpayments", "claimpayments"},
+	Outstanding: {"outstanding", "os", "osreserve", "casereserve", "casereserves", "reserve", "reserves", "lossreserve", "outstandingreserve",
+		"reserveoutstanding", "unpaid", "unpaidloss", "outstandingloss", "outstandinglosses", "outstandingamount", "caseoutstanding",
+		"grossoutstanding", "totaloutstanding", "caseestimate"},
+	Incurred: {"incurred", "totalincurred", "incurredtotal", "incurredloss", "incurredlosses", "lossincurred", "incurredamount",
+		"amountincurred", "caseincurred", "reportedincurred", "grossincurred", "incurredgross"},
+	Amount: {"amount", "loss", "lossamount", "amountofloss", "claimamount", "amountofclaim", "groundup", "grounduploss", "groundupamount",
+		"severity", "size", "claimsize", "losssize", "grossloss"},
+	Deductible: {"deductible", "ded", "excess", "deductibleamount", "deductibleapplied", "policydeductible", "policyexcess", "retention",
+		"claimdeductible", "excessamount"},
+	Limit: {"limit", "policylimit", "paymentlimit", "limitofliability", "limitofindemnity", "suminsured", "limitamount", "maximumpayment",
+		"maxpayment", "topofcover", "coverlimit", "coveragelimit", "claimlimit", "occurrencelimit", "limitperclaim"},
+	LimitReached:   {"limitreached", "censored", "atlimit", "cappedatlimit", "limitflag", "abovelimit", "limitexhausted"},
+	DeductibleType: {"deductibletype", "typeofdeductible", "dedtype", "kindofdeductible"},
+	Weight:         {"weight", "weights", "claimweight"},
+	Currency:       {"currency", "ccy", "cur", "curr", "currencycode", "originalcurrency", "currencyofclaim"},
 }
 
 // letters is a header's letters and digits in lower case.
@@ -84,7 +97,9 @@ func letters(header string) string {
 }
 
 // guessColumns maps headers to fields: a header that equals a field's name
-// first, then the first heading word that fits, no header twice.
+// first, then the first heading word that fits, no header twice. Where there
+// is an amount and its parts too, the one that goes by the field's own name
+// stays, else the parts.
 func guessColumns(header []string) ColumnMap {
 	columns := ColumnMap{}
 	taken := map[string]bool{}
@@ -96,17 +111,27 @@ func guessColumns(header []string) ColumnMap {
 	}
 	for _, f := range Fields {
 		for _, h := range header {
-			if strings.EqualFold(strings.TrimSpace(h), string(f)) {
+			if letters(h) == letters(string(f)) {
 				claim(f, h)
 			}
 		}
 	}
+	byName := letters(columns[Amount]) == string(Amount)
 	for _, f := range Fields {
 		for _, word := range headings[f] {
 			for _, h := range header {
 				if letters(h) == word {
 					claim(f, h)
 				}
+			}
+		}
+	}
+	if _, amount := columns[Amount]; amount {
+		for _, part := range []Field{Paid, Outstanding, Incurred} {
+			if _, ok := columns[part]; ok && byName {
+				delete(columns, part)
+			} else if ok && part != Outstanding {
+				delete(columns, Amount)
 			}
 		}
 	}

@@ -40,15 +40,15 @@ func (g *Guess) guessMarks(data [][]string) {
 			Question: fmt.Sprintf("Two number styles in one file: %s and %s. One style must be chosen; rows in the other become findings.", votes.commaCell, votes.pointCell),
 			Choices:  []string{",", "."}})
 	}
-	switch {
-	case votes.space > 0:
-		f.Thousands = " "
-	case votes.apostrophe > 0:
-		f.Thousands = "'"
-	case f.Decimal == "." && votes.commaGroups > 0:
-		f.Thousands = ","
-	case f.Decimal == "," && votes.pointGroups > 0:
-		f.Thousands = "."
+	f.Thousands = ""
+	most := 0
+	for _, m := range [...]struct {
+		mark  string
+		votes int
+	}{{" ", votes.space}, {"'", votes.apostrophe}, {",", votes.commaGroups}, {".", votes.pointGroups}} {
+		if m.mark != f.Decimal && m.votes > most {
+			f.Thousands, most = m.mark, m.votes
+		}
 	}
 }
 
@@ -63,11 +63,21 @@ type markVotes struct {
 
 func (v *markVotes) cast(cell string) {
 	body, _, _ := unsigned([]byte(cell))
-	text := string(body)
-	if strings.ContainsAny(text, " \u00a0\u202f\u2009") {
+	text := strings.Map(plainMark, string(body))
+	if i := strings.IndexAny(text, "eE"); i > 0 { // the digits of scientific notation are not grouped
+		text = text[:i]
+		if strings.Count(text, ".")+strings.Count(text, ",") == 1 {
+			v.decimal(text[strings.IndexAny(text, ".,")], cell)
+		}
+		return
+	}
+	if text == "" || strings.Trim(text, "0123456789., '") != "" {
+		return // no number in any style
+	}
+	if strings.Contains(text, " ") {
 		v.space++
 	}
-	if strings.ContainsAny(text, "'\u2019") {
+	if strings.Contains(text, "'") {
 		v.apostrophe++
 	}
 	commas, points := strings.Count(text, ","), strings.Count(text, ".")
@@ -90,7 +100,7 @@ func (v *markVotes) cast(cell string) {
 	case points > 1:
 		v.pointGroups++
 		v.decimal(',', "")
-	case behind != 3 || last > 3 || last == 0 || text[0] == '0':
+	case behind != 3 || last > 3 || last == 0 || text[0] == '0' || strings.ContainsAny(text, " '"):
 		v.decimal(text[last], cell)
 	default:
 		v.either = cell
@@ -100,6 +110,17 @@ func (v *markVotes) cast(cell string) {
 			v.pointGroups++
 		}
 	}
+}
+
+// plainMark is a mark of typography as the plain one.
+func plainMark(r rune) rune {
+	switch r {
+	case '\u00a0', '\u202f', '\u2009':
+		return ' '
+	case '\u2019':
+		return '\''
+	}
+	return r
 }
 
 // decimal counts a vote; a form such as 1.234.567 rules the point out as a

@@ -139,7 +139,23 @@ func (p Plan) resolve(header []string) (map[Field]int, error) {
 				Found:    fmt.Sprintf("no column with the header %q, which is to hold %s; the headers are %s", name, f, strings.Join(header, ", ")),
 				Accepted: "map the field to one of these, or to none"}
 		}
+		for other, column := range at {
+			if column == found {
+				return nil, &FileError{Line: p.Format.HeaderLine,
+					Found:    fmt.Sprintf("the column %q is to hold both %s and %s", name, other, f),
+					Accepted: "a column holds one field"}
+			}
+		}
 		at[f] = found
+	}
+	if _, amount := at[Amount]; amount {
+		for _, part := range []Field{Paid, Outstanding, Incurred} {
+			if _, ok := at[part]; ok {
+				return nil, &FileError{Line: p.Format.HeaderLine,
+					Found:    fmt.Sprintf("the loss is mapped to amount (%q) and to %s (%q) too", p.Columns[Amount], part, p.Columns[part]),
+					Accepted: "map amount alone, or paid, outstanding and incurred"}
+			}
+		}
 	}
 	for _, f := range []Field{Amount, Paid, Incurred} {
 		if _, ok := at[f]; ok {
