@@ -67,6 +67,7 @@ func (s *splitter) next() ([][]byte, int, error) {
 		part := s.buffer[s.from:s.to]
 		i := bytes.IndexByte(part[searched:], s.newline)
 		if i < 0 && s.crOnly(part) {
+			searched = done
 			continue
 		}
 		if i >= 0 {
