@@ -52,8 +52,12 @@ func (p *partialSums) add(obs []Observation, offset int) {
 		}
 		c.Uncensored++
 		c.EventWeight += o.Weight
-		c.Smallest = math.Min(c.Smallest, o.Loss)
-		c.Largest = math.Max(c.Largest, o.Loss)
+		if o.Loss < c.Smallest {
+			c.Smallest = o.Loss
+		}
+		if o.Loss > c.Largest {
+			c.Largest = o.Loss
+		}
 		p.excess.add(o.Weight * ((o.Loss - p.pivot) / p.pivot))
 		ratio := o.Loss / p.pivot
 		if o.Weight != 1 || ratio > 1e15 || ratio < 1e-15 {

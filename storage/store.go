@@ -41,9 +41,6 @@ func Open(ctx context.Context, path string, now func() time.Time) (*Store, error
 		return nil, fmt.Errorf("database folder: %w", err)
 	}
 	s := &Store{files: path + "-files", now: now}
-	if err := os.MkdirAll(s.files, 0o700); err != nil {
-		return nil, fmt.Errorf("folder of uploaded files: %w", err)
-	}
 	var err error
 	if s.writer, err = sql.Open("sqlite3", dsn(path, false)); err != nil {
 		return nil, fmt.Errorf("database %s: %w", path, err)
@@ -52,6 +49,10 @@ func Open(ctx context.Context, path string, now func() time.Time) (*Store, error
 	if err := s.prepare(ctx); err != nil {
 		s.writer.Close()
 		return nil, fmt.Errorf("database %s: %w", path, plain(err))
+	}
+	if err := os.MkdirAll(s.files, 0o700); err != nil {
+		s.writer.Close()
+		return nil, fmt.Errorf("folder of uploaded files: %w", err)
 	}
 	if s.reader, err = sql.Open("sqlite3", dsn(path, true)); err != nil {
 		s.writer.Close()

@@ -63,3 +63,12 @@ func (f TermFlags) Reached() Reached { return Reached(f >> 1) }
 
 // Len is the number of claims.
 func (b *Book) Len() int { return len(b.Paid) }
+
+// Largest is the largest amount of a claim in money, 0 for an empty book.
+func (b *Book) Largest(field AmountField) float64 {
+	var most int64
+	for i := range b.Paid {
+		most = max(most, b.amount(field, i))
+	}
+	return Amount{Units: most, Decimals: int16(b.Decimals)}.Float()
+}

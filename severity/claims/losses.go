@@ -2,7 +2,6 @@ package claims
 
 import (
 	"math"
-	"slices"
 	"sync"
 
 	"spillway/severity"
@@ -37,7 +36,7 @@ func (b *Book) makeLosses(field AmountField) *losses {
 	observations := make([]severity.Observation, n)
 	minor := math.Pow(10, float64(b.Decimals))
 	money := func(units int64) float64 { return float64(units) / minor } // units below 2^53: one rounding
-	inParallel(n, func(from, to int) {
+	inParallel(n, func(_, from, to int) {
 		for i := from; i < to; i++ {
 			terms := Terms{Type: b.Terms[i].DeductibleType(), Reached: b.Terms[i].Reached()}
 			if d := b.Deductible[i]; d != NoTerm {
@@ -54,12 +53,7 @@ func (b *Book) makeLosses(field AmountField) *losses {
 			observations[i], l.problem[i] = o, problem
 		}
 	})
-	for i, problem := range l.problem {
-		if problem == NoProblem {
-			l.order = append(l.order, int32(i))
-		}
-	}
-	sortByLoss(l.order, observations)
+	l.order = byLoss(observations, l.problem)
 	l.observations = make([]severity.Observation, len(l.order))
 	for k, i := range l.order {
 		l.observations[k] = observations[i]
@@ -67,40 +61,35 @@ func (b *Book) makeLosses(field AmountField) *losses {
 	return l
 }
 
-// sortByLoss orders claim indices by ascending loss, then by index, so that
-// the order is the same every time.
-func sortByLoss(order []int32, observations []severity.Observation) {
-	compare := func(a, b int32) int {
-		switch x, y := observations[a].Loss, observations[b].Loss; {
-		case x < y:
-			return -1
-		case x > y:
-			return 1
-		}
-		return int(a - b)
+// chosen are the observations of the claims in use, used in number.
+func (l *losses) chosen(verdicts []verdict, used int) []severity.Observation {
+	if used == len(l.observations) {
+		return l.observations
 	}
-	half := len(order) / 2
-	inParallel(2, func(from, to int) {
-		for part := from; part < to; part++ {
-			slices.SortFunc(order[part*half:half+part*(len(order)-half)], compare)
+	list := make([]severity.Observation, used)
+	// The first half's share tells where the second half begins.
+	half := 0
+	for _, i := range l.order[:len(l.order)/2] {
+		if verdicts[i] == inUse {
+			half++
+		}
+	}
+	inParallel(len(l.order), func(part, from, to int) {
+		at := part * half
+		for k := from; k < to; k++ {
+			if verdicts[l.order[k]] == inUse {
+				list[at] = l.observations[k]
+				at++
+			}
 		}
 	})
-	merged := make([]int32, 0, len(order))
-	a, b := order[:half], order[half:]
-	for len(a) > 0 && len(b) > 0 {
-		if compare(a[0], b[0]) < 0 {
-			merged, a = append(merged, a[0]), a[1:]
-		} else {
-			merged, b = append(merged, b[0]), b[1:]
-		}
-	}
-	copy(order, append(append(merged, a...), b...))
+	return list
 }
 
-// inParallel splits [0, n) in two.
-func inParallel(n int, work func(from, to int)) {
+// inParallel splits [0, n) into two halves, numbered 0 and 1.
+func inParallel(n int, work func(half, from, to int)) {
 	var wait sync.WaitGroup
-	wait.Go(func() { work(0, n/2) })
-	work(n/2, n)
+	wait.Go(func() { work(0, 0, n/2) })
+	work(1, n/2, n)
 	wait.Wait()
 }

@@ -8,8 +8,7 @@ import (
 
 // Sample is what a selection of a book leaves for the fit.
 type Sample struct {
-	Observations   []severity.Observation // in ascending order of Loss
-	Claims         []int32                // of each observation, its index in the book
+	Observations   []severity.Observation // in ascending order of Loss; shared, not to be changed
 	Reconciliation Reconciliation
 }
 
@@ -21,19 +20,10 @@ func Select(book *Book, selection Selection) Sample {
 	losses := book.losses(selection.Amount)
 	verdicts, counts := judge(book, selection, losses)
 
-	used := counts[inUse].Rows
-	sample := Sample{
-		Observations: make([]severity.Observation, 0, used),
-		Claims:       make([]int32, 0, used),
+	return Sample{
+		Observations:   losses.chosen(verdicts, counts[inUse].Rows),
+		Reconciliation: reconcile(book, selection, counts),
 	}
-	for k, i := range losses.order {
-		if verdicts[i] == inUse {
-			sample.Observations = append(sample.Observations, losses.observations[k])
-			sample.Claims = append(sample.Claims, i)
-		}
-	}
-	sample.Reconciliation = reconcile(book, selection, counts)
-	return sample
 }
 
 // verdict says why a claim is not used, in the order in which the reasons
@@ -76,34 +66,41 @@ func judge(book *Book, s Selection, losses *losses) ([]verdict, []Line) {
 		status[code] = len(s.Statuses) == 0 || slices.Contains(s.Statuses, Status(code))
 	}
 	byDate := s.LossFrom != 0 || s.LossTo != 0
-	to := s.LossTo
-	if to == 0 {
-		to = 1<<31 - 1
+	last := s.LossTo
+	if last == 0 {
+		last = 1<<31 - 1
 	}
 
 	out := make([]verdict, book.Len())
-	counts := make([]Line, verdicts)
-	for i := range out {
-		var v verdict
-		switch date := book.LossDate[i]; {
-		case !business[book.Business[i]]:
-			v = otherBusiness
-		case !segment[book.Segment[i]]:
-			v = otherSegment
-		case byDate && date == 0:
-			v = noLossDate
-		case byDate && (date < s.LossFrom || date > to):
-			v = outsideDates
-		case !status[book.Status[i]]:
-			v = otherStatus
-		case losses.problem[i] != NoProblem:
-			v = firstProblem + verdict(losses.problem[i])
+	halves := [2][]Line{make([]Line, verdicts), make([]Line, verdicts)}
+	inParallel(len(out), func(half, from, to int) {
+		counts := halves[half]
+		for i := from; i < to; i++ {
+			var v verdict
+			switch date := book.LossDate[i]; {
+			case !business[book.Business[i]]:
+				v = otherBusiness
+			case !segment[book.Segment[i]]:
+				v = otherSegment
+			case byDate && date == 0:
+				v = noLossDate
+			case byDate && (date < s.LossFrom || date > last):
+				v = outsideDates
+			case !status[book.Status[i]]:
+				v = otherStatus
+			case losses.problem[i] != NoProblem:
+				v = firstProblem + verdict(losses.problem[i])
+			}
+			out[i] = v
+			counts[v].Rows++
+			counts[v].Amount += book.amount(s.Amount, i)
 		}
-		out[i] = v
-		counts[v].Rows++
-		counts[v].Amount += book.amount(s.Amount, i)
+	})
+	for v := range verdicts {
+		halves[0][v].Rows += halves[1][v].Rows
+		halves[0][v].Amount += halves[1][v].Amount
 	}
-	return out, counts
+	return out, halves[0]
 }
 
 // chosen marks the codes of a dictionary that a selection names.

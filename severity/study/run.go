@@ -91,7 +91,9 @@ func describe(s severity.Summary, sample *evidence.Sample, observations []severi
 	for i := range observations {
 		part := observations[i].Weight * observations[i].Loss
 		total += part
-		largest = math.Max(largest, part)
+		if part > largest {
+			largest = part
+		}
 	}
 	f.MeanLoss = total / s.Weight
 	f.LargestShare = largest / total
