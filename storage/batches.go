@@ -56,6 +56,13 @@ func (s *Store) Batches(ctx context.Context) ([]Batch, error) {
 	return list, plain(rows.Err())
 }
 
+// BatchCount is the number of batches. Batches are never removed, so it also
+// tells whether any has come since it was last asked for.
+func (s *Store) BatchCount(ctx context.Context) (n int, err error) {
+	err = s.reader.QueryRowContext(ctx, "select count(*) from batches").Scan(&n)
+	return n, plain(err)
+}
+
 // Batch returns one batch, or ErrNotFound.
 func (s *Store) Batch(ctx context.Context, id BatchID) (*Batch, error) {
 	b := &Batch{ID: id}
