@@ -119,6 +119,11 @@ func (in *input) settle(r *reading, asked extract.ColumnMap, basis claims.Basis,
 	if err := r.refuseDoubts(guess.Doubts, columns); err != nil {
 		return err
 	}
+	for _, d := range guess.Doubts {
+		if d.About == "sheet" || d.About == "dates" && hasDate(columns) {
+			notes = append(notes, d.Question)
+		}
+	}
 	if code := currencyOf(guess, columns); basis.Currency == "" && code != "" {
 		in.plan.Basis.Currency = code
 		notes = append(notes, fmt.Sprintf("currency %s, as in the first row; say --currency for another", code))
