@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"strconv"
+	"strings"
 
 	"spillway/severity/claims"
 )
@@ -84,7 +85,7 @@ func readDate(cell []byte, f Format, from1904 bool) (claims.Date, error) {
 	p, ok := splitDate(cell)
 	switch {
 	case !ok && f.Kind == Workbook:
-		if serial, err := strconv.ParseFloat(string(cell), 64); err == nil {
+		if serial, err := strconv.ParseFloat(strings.Replace(string(cell), f.Decimal, ".", 1), 64); err == nil {
 			return fromSerial(serial, from1904)
 		}
 		return 0, errors.New(noDate(cell))

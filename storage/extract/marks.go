@@ -2,6 +2,7 @@ package extract
 
 import (
 	"fmt"
+	"strconv"
 	"strings"
 )
 
@@ -12,7 +13,10 @@ func (g *Guess) guessMarks(data [][]string) {
 	for _, f := range Fields {
 		if f.isMoney() {
 			for _, cell := range g.columnOf(f, data) {
-				votes.cast(cell)
+				// The numbers of a workbook have no marks of their own; its texts do.
+				if g.Format.Kind == Delimited || !bareNumber(cell) {
+					votes.cast(cell)
+				}
 			}
 		}
 	}
@@ -26,7 +30,7 @@ func (g *Guess) guessMarks(data [][]string) {
 		// Only forms such as 1,234 or 1.234 occur. Between commas the point is
 		// the decimal mark; elsewhere nothing proves either reading.
 		f.Decimal = "."
-		if f.Delimiter != "," && f.Kind == Delimited {
+		if f.Delimiter != "," {
 			if strings.Contains(votes.either, ".") {
 				f.Decimal = ","
 			}
@@ -110,6 +114,12 @@ func (v *markVotes) cast(cell string) {
 			v.pointGroups++
 		}
 	}
+}
+
+// bareNumber tells that a cell may be a number as a workbook keeps it.
+func bareNumber(cell string) bool {
+	_, err := strconv.ParseFloat(cell, 64)
+	return err == nil
 }
 
 // plainMark is a mark of typography as the plain one.

@@ -36,12 +36,11 @@ func sniffKind(file io.ReaderAt, size int64) (f Format, sheets []string, hidden 
 		}
 	}
 	if bytes.HasPrefix(head, []byte("PK\x03\x04")) {
-		book, err := openFile(file, size)
+		b, err := openBook(file, size)
 		if err != nil {
 			return f, nil, 0, err
 		}
-		defer book.Close()
-		sheets, hidden = visibleSheets(book)
+		sheets, hidden = b.visible()
 		if len(sheets) == 0 {
 			return f, nil, 0, &FileError{Found: "a workbook without a visible sheet", Accepted: accepted}
 		}

@@ -20,7 +20,7 @@ func open(file io.ReaderAt, size int64, f Format) (source, error) {
 		return nil, err
 	}
 	if f.Kind == Workbook {
-		return openWorkbook(file, size, f.Sheet)
+		return openWorkbook(file, size, f)
 	}
 	return newSplitter(decode(io.NewSectionReader(file, 0, size), f.Encoding), f.Delimiter[0]), nil
 }
