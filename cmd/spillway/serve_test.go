@@ -125,6 +125,7 @@ func TestServeToTheNetworkWarns(t *testing.T) {
 	if code, _ := s.get(t, "/healthz"); code != http.StatusOK {
 		t.Errorf("/healthz: %d", code)
 	}
+	s.stop(t)
 	warnings := 0
 	for _, line := range strings.Split(s.log(), "\n") {
 		if strings.Contains(line, "level=WARN") && strings.Contains(line, "no accounts") {
@@ -134,7 +135,6 @@ func TestServeToTheNetworkWarns(t *testing.T) {
 	if warnings != 1 || strings.Contains(s.line, "only") {
 		t.Errorf("printed %q and %d warnings, want one that there are no accounts\n%s", s.line, warnings, s.log())
 	}
-	s.stop(t)
 }
 
 func TestServeRefusesAForeignFile(t *testing.T) {
@@ -152,18 +152,21 @@ func TestDemo(t *testing.T) {
 	if !strings.Contains(first.line, "served on 127.0.0.1 only") {
 		t.Errorf("printed %q, want that it is served on 127.0.0.1 only", first.line)
 	}
+	for _, path := range []string{"/", "/batches", "/studies", "/studies/1", "/healthz"} {
+		code, page := first.get(t, path)
+		if code != http.StatusOK || strings.HasPrefix(path, "/studies") && !strings.Contains(page, demoStudy) {
+			t.Errorf("%s: %d, want a page, those of studies with %q", path, code, demoStudy)
+		}
+	}
+	first.stop(t)
 	if log := first.log(); strings.Count(log, "rows read") != 4 || !strings.Contains(log, "2 revisions") {
 		t.Errorf("loading said\n%s", log)
 	}
-	if code, _ := first.get(t, "/healthz"); code != http.StatusOK {
-		t.Errorf("/healthz: %d", code)
-	}
-	first.stop(t)
 	second := start(t, "demo", "--data", folder, "--addr", "127.0.0.1:0")
+	second.stop(t)
 	if log := second.log(); strings.Contains(log, "rows read") || strings.Contains(log, "revisions") {
 		t.Errorf("the second time the book was loaded again:\n%s", log)
 	}
-	second.stop(t)
 
 	store, err := openStore(t.Context(), inFolder(folder))
 	if err != nil {
