@@ -37,6 +37,9 @@ type moments struct{ mass, s, z float64 }
 // newExcess integrates for shape a, cut c and layer width l > 0 or +Inf.
 func newExcess(a, c, l float64) *excess {
 	sigma := math.Log1p(l / c)
+	if math.IsInf(sigma, 1) && !math.IsInf(l, 1) { // the ratio is beyond the doubles
+		sigma = math.Log(l) - math.Log(c)
+	}
 	peak := 0.0
 	if a > c {
 		peak = math.Log(a / c)
@@ -142,6 +145,9 @@ func (k kernel) walk(top, length float64, add func(mass, offset float64)) {
 	for at < length && height > negligible {
 		from := top + direction*at
 		h := math.Min(k.panel(from, longest), length-at)
+		if !(at+h > at) {
+			return // arguments at the end of the doubles
+		}
 		z := k.c * math.Exp(from)
 		slope := k.a - z
 		for i, x := range gaussNodes {

@@ -38,13 +38,20 @@ func (g Gamma) MeanFigure() Figure { return unbounded(g.Mean(), g.Mean(), g.Mean
 // gradient; the mean at +Inf.
 func (g Gamma) LimitedExpectedValueFigure(u float64) Figure {
 	switch {
+	case !(u >= 0):
+		return unbounded(math.NaN(), math.NaN(), math.NaN())
 	case u == 0:
 		return constant(0, 2)
 	case math.IsInf(u, 1):
 		return g.MeanFigure()
 	}
-	f := g.LayerFigures(0, u).Mean
-	f.Value = g.LimitedExpectedValue(u)
+	value := math.Min(g.LimitedExpectedValue(u), u)
+	least := tiny * g.Scale
+	f := g.LayerFigures(0, math.Max(u, least)).Mean
+	if u < least { // as good as proportional to u
+		return Figure{value, []float64{f.Gradient[0] / least * u, f.Gradient[1] / least * u}, u, f.Complement / least * u}
+	}
+	f.Value = value
 	return f
 }
 
@@ -72,7 +79,7 @@ func (g Gamma) LossEliminationRatioFigure(d float64) Figure {
 	part := g.LimitedExpectedValueFigure(d)
 	rest := g.LayerFigures(d, math.Inf(1)).Mean
 	mean := g.Mean()
-	f := Figure{part.Value / mean, make([]float64, 2), 1, rest.Value / mean}
+	f := Figure{math.Min(part.Value/mean, 1), make([]float64, 2), 1, math.Min(rest.Value/mean, 1)}
 	for i := range f.Gradient {
 		f.Gradient[i] = (part.Gradient[i] - part.Value) / mean
 		if rest.Value < part.Value {

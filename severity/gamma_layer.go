@@ -16,7 +16,8 @@ type LayerFigures struct {
 }
 
 // LayerMean is E[min((X-A)+, L)] for an attachment A >= 0 and a limit L > 0 or
-// +Inf for unlimited; NaN for others.
+// +Inf for unlimited; NaN for others, and where A or L over the scale is beyond
+// what a double holds.
 func (g Gamma) LayerMean(attachment, limit float64) float64 {
 	c := g.cut(attachment, limit)
 	if c == nil {
@@ -103,13 +104,17 @@ func (g Gamma) cut(attachment, limit float64) *cutLayer {
 		return nil
 	}
 	z, l := attachment/g.Scale, limit/g.Scale
+	least := 1e-20 * (Gamma{g.Shape, 1}).LimitedExpectedValue(l)
+	if least < 1e-300 {
+		least = 1e-14 * l
+	}
 	c := z
-	if least := 1e-20 * (Gamma{g.Shape, 1}).LimitedExpectedValue(l); c < least {
+	if c < least {
 		c = least
 		l -= c - z
 	}
-	if c == 0 || l == 0 {
-		return nil // below the smallest numbers held
+	if c == 0 || l == 0 || math.IsInf(c, 1) {
+		return nil // beyond the doubles in units of the scale
 	}
 	return g.newCutLayer(z, c, l)
 }
@@ -157,13 +162,22 @@ func (g Gamma) newCutLayer(z, c, l float64) *cutLayer {
 	return k
 }
 
+// tiny is a loss, in units of the scale, below which its powers leave the
+// range of the doubles while nothing but its leading power matters.
+const tiny = 1e-250
+
 // shares are ln Q(a,z) and ln P(a,z) with their derivatives in ln a and ln θ.
 func shares(a, z float64) (logS, logP share) {
 	if z == 0 {
 		return share{}, share{log: math.Inf(-1)}
 	}
 	u, l := special.LogUpperJet(a, z), special.LogLowerJet(a, z)
-	return share{u.Log, a * u.DA, -z * u.DZ}, share{l.Log, a * l.DA, -z * l.DZ}
+	logS, logP = share{u.Log, a * u.DA, -z * u.DZ}, share{l.Log, a * l.DA, -z * l.DZ}
+	if z < tiny { // P is z^a/Γ(a+1), and ∂/∂z overflows
+		logP.dt = -a
+		logS.dt = a * math.Exp(l.Log-u.Log)
+	}
+	return logS, logP
 }
 
 // given are the probabilities of Z > c and of Z <= c given Z > z, of those of
@@ -214,6 +228,7 @@ func (k *cutLayer) mixed(s, p share) mixture {
 func (g Gamma) money(mean, short moment, limit float64) Figure {
 	f := unbounded(g.Scale*mean.value, g.Scale*mean.da, g.Scale*mean.dt)
 	if !math.IsInf(limit, 1) {
+		f.Value = math.Min(f.Value, limit) // a rounding may lie between them
 		f.Bound, f.Complement = limit, g.Scale*short.value
 	}
 	return f

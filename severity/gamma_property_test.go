@@ -167,6 +167,40 @@ func TestLimitedExpectedValueGrowsBySurvival(t *testing.T) {
 	})
 }
 
+// TestFiguresAtTheEndsOfTheDoubles: whatever the shape, the scale and the layer,
+// figures come out in bounded time, are numbers and keep within their bounds.
+func TestFiguresAtTheEndsOfTheDoubles(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		power := func(lo, hi float64, name string) float64 {
+			return math.Pow(10, rapid.Float64Range(lo, hi).Draw(t, name))
+		}
+		g := Gamma{power(-8, 8, "shape"), power(-9, 12, "scale")}
+		attachment, limit := g.Scale*power(-300, 12, "attachment"), g.Scale*power(-280, 15, "limit")
+		switch rapid.IntRange(0, 3).Draw(t, "kind") {
+		case 0:
+			attachment = 0
+		case 1:
+			attachment = drawLoss(t, g, "ln -ln S")
+		case 2:
+			limit = math.Inf(1)
+		}
+		p := 1 - power(-15, -0.01, "exceedance")
+		for what, f := range figuresOf(g, attachment, limit, p) {
+			ok := f.Value >= 0 && f.Value <= f.Bound*(1+1e-12) && f.Complement >= 0
+			for _, d := range f.Gradient {
+				ok = ok && !math.IsNaN(d) && !math.IsInf(d, 0)
+			}
+			if !ok {
+				t.Errorf("gamma %v, %v xs %v, p %v: %s is %+v", g, limit, attachment, p, what, f)
+			}
+		}
+		quantile, tail := g.Quantile(p), g.TailValueAtRisk(p)
+		if tail < quantile*(1-1e-13) || tail < g.Mean()*(1-1e-12) {
+			t.Errorf("gamma %v: the tail value at risk %v lies below the quantile %v at %v or the mean %v", g, tail, quantile, p, g.Mean())
+		}
+	})
+}
+
 // TestBodyAgreesWithGonum: a general-purpose library, where it is good.
 func TestBodyAgreesWithGonum(t *testing.T) {
 	for _, shape := range []float64{0.4, 1, 2.5, 30, 200} {
