@@ -58,9 +58,11 @@ func (s *skipMark) Read(p []byte) (int, error) {
 // anywhere.
 func guessEncoding(file io.ReaderAt, size int64) (Encoding, error) {
 	head := make([]byte, min(size, 4096))
-	if _, err := file.ReadAt(head, 0); err != nil && err != io.EOF {
+	n, err := file.ReadAt(head, 0)
+	if err != nil && err != io.EOF {
 		return "", err
 	}
+	head = head[:n]
 	switch {
 	case bytes.HasPrefix(head, utf8Mark):
 		return UTF8, nil
