@@ -26,10 +26,9 @@ func FitGamma(s Summary, level float64) (*Fit, *FitError) {
 
 type gammaMaximum struct {
 	ascent
-	starts   int
-	maxima   int
-	concave  bool // the global certificate applies
-	exponent float64
+	starts  int
+	maxima  int
+	concave bool // the global certificate applies
 }
 
 // maximiseGamma finds the maximum alone, in a coordinate scale where the

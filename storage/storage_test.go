@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 	"time"
@@ -134,4 +135,28 @@ func TestBookEqualsRows(t *testing.T) {
 		t.Fatal(err)
 	}
 	compare()
+}
+
+// A claim open with a reserve in one quarter and closed without payment in the
+// next is worth nothing, not its old reserve.
+func TestClosedWithoutPaymentSupersedesTheReserve(t *testing.T) {
+	s := openTest(t)
+	head := "claim_id,loss_date,status,line,segment,paid,outstanding,deductible,limit\n"
+	first := accept(t, s, head+"A1,2025-01-01,open,cargo,north,0,5000.00,0,20000\nA2,2025-01-01,closed,cargo,north,800.00,0,0,20000\n", "harbour", day(t, "2026-03-31"))
+	second := accept(t, s, head+"A1,2025-01-01,closed,cargo,north,0,0,0,20000\nA2,2025-01-01,closed,cargo,north,800.00,0,0,20000\n", "harbour", day(t, "2026-06-30"))
+	book, err := s.Book(context.Background(), []BatchID{first, second})
+	if err != nil {
+		t.Fatal(err)
+	}
+	sample := claims.Select(book, claims.Selection{Amount: claims.IncurredAmount})
+	if book.Len() != 2 || len(sample.Observations) != 1 || sample.Reconciliation.Used.Amount != 80000 {
+		t.Errorf("%d claims, %d used for %d", book.Len(), len(sample.Observations), sample.Reconciliation.Used.Amount)
+	}
+	want := []claims.Exclusion{
+		{Reason: "valued again in a later batch: quarter", Line: claims.Line{Rows: 2, Amount: 580000}},
+		{Reason: claims.NilClaim.String(), Line: claims.Line{Rows: 1}},
+	}
+	if !slices.Equal(sample.Reconciliation.Excluded, want) {
+		t.Errorf("left out %+v, want %+v", sample.Reconciliation.Excluded, want)
+	}
 }

@@ -41,6 +41,9 @@ func Open(ctx context.Context, path string, now func() time.Time) (*Store, error
 		return nil, fmt.Errorf("database folder: %w", err)
 	}
 	s := &Store{files: path + "-files", now: now}
+	if err := whose(ctx, path); err != nil {
+		return nil, fmt.Errorf("database %s: %w", path, plain(err))
+	}
 	var err error
 	if s.writer, err = sql.Open("sqlite3", dsn(path, false)); err != nil {
 		return nil, fmt.Errorf("database %s: %w", path, err)
@@ -84,18 +87,31 @@ func dsn(path string, readOnly bool) string {
 	return "file:" + (&url.URL{Path: path}).EscapedPath() + "?" + q.Encode()
 }
 
-// prepare checks whose file this is and migrates it.
-func (s *Store) prepare(ctx context.Context) error {
-	var id, tables int
-	if err := s.writer.QueryRowContext(ctx, "pragma application_id").Scan(&id); err != nil {
+// whose reads the mark of an existing file without changing anything in it.
+func whose(ctx context.Context, path string) error {
+	if stat, err := os.Stat(path); errors.Is(err, os.ErrNotExist) || err == nil && stat.Size() == 0 {
+		return nil
+	}
+	db, err := sql.Open("sqlite3", "file:"+(&url.URL{Path: path}).EscapedPath()+"?mode=ro&_busy_timeout=10000")
+	if err != nil {
 		return err
 	}
-	if err := s.writer.QueryRowContext(ctx, "select count(*) from sqlite_schema").Scan(&tables); err != nil {
+	defer db.Close()
+	var id, tables int
+	if err := db.QueryRowContext(ctx, "pragma application_id").Scan(&id); err != nil {
+		return err
+	}
+	if err := db.QueryRowContext(ctx, "select count(*) from sqlite_schema").Scan(&tables); err != nil {
 		return err
 	}
 	if id != applicationID && (id != 0 || tables > 0) {
 		return fmt.Errorf("%w (application id %#x); choose another file, or an empty one", ErrForeignFile, id)
 	}
+	return nil
+}
+
+// prepare checks the settings and migrates.
+func (s *Store) prepare(ctx context.Context) error {
 	if err := readBack(ctx, s.writer); err != nil {
 		return err
 	}
@@ -116,14 +132,26 @@ func migrate(ctx context.Context, db *sql.DB, steps fs.FS) error {
 		return fmt.Errorf("migrations: %w", err)
 	}
 	have, want, err := provider.GetVersions(ctx)
+	for attempt := 0; err != nil && attempt < 20 && ctx.Err() == nil; attempt++ {
+		have, want, err = provider.GetVersions(ctx) // another start may be making the table of versions
+	}
 	if err != nil {
 		return fmt.Errorf("schema version: %w", err)
 	}
 	if have > want {
 		return fmt.Errorf("%w: the file has schema %d, this program knows %d; use the newer program", ErrNewerFile, have, want)
 	}
-	if _, err := provider.Up(ctx); err != nil {
-		return fmt.Errorf("migrations: %w", err)
+	// Of several programs that start at once one applies a step and the others
+	// fail on it: the step is there all the same, so they go on from it.
+	for attempt := 0; have < want; attempt++ {
+		_, upErr := provider.Up(ctx)
+		if upErr == nil {
+			break
+		}
+		before := have
+		if have, _, err = provider.GetVersions(ctx); err != nil || have == before && attempt > 20 {
+			return fmt.Errorf("migrations: %w", errors.Join(upErr, err))
+		}
 	}
 	rows, err := db.QueryContext(ctx, "pragma foreign_key_check")
 	if err != nil {

@@ -58,8 +58,7 @@ func BenchmarkRequests(b *testing.B) {
 // opens a study on it.
 func loadBook(t testing.TB, site *httptest.Server) {
 	t.Helper()
-	files := invented.Book(2)
-	file := files[len(files)-1]
+	file := latestFile()
 	post := func(address string, form url.Values) {
 		t.Helper()
 		answer, err := http.PostForm(site.URL+address, form)
@@ -82,4 +81,9 @@ func loadBook(t testing.TB, site *httptest.Server) {
 	post(basis, form)
 	post(strings.Replace(columns, "columns", "accept", 1), url.Values{"name": {"Latest quarter"}})
 	post("/studies", url.Values{"name": {"Benchmark"}, "batch": {"1"}})
+}
+
+func latestFile() invented.File {
+	files := invented.Book(2)
+	return files[len(files)-1]
 }

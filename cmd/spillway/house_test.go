@@ -17,7 +17,7 @@ var arrows = map[string][]string{
 	"spillway/cmd":                      {"spillway/web", "spillway/storage", "spillway/severity"},
 	"spillway/web":                      {"spillway/storage", "spillway/severity"},
 	"spillway/web/view":                 {"spillway/web/chart", "spillway/web/assets", "spillway/storage/extract", "spillway/severity"},
-	"spillway/web/chart":                {},
+	"spillway/web/chart":                {"spillway/severity"},
 	"spillway/web/assets":               {},
 	"spillway/web/report":               {"spillway/storage/extract", "spillway/severity"},
 	"spillway/storage":                  {"spillway/storage/extract", "spillway/severity", "spillway/migrations"},

@@ -100,6 +100,13 @@ func (r *Reader) problem(problem claims.Problem) {
 	value := []byte(c.Incurred().String())
 	switch problem {
 	case claims.NilClaim:
+		// As of a valuation date a claim at nothing is a valuation like any
+		// other: it must take the place of the reserve it once had.
+		if r.plan.Basis.Valuation != 0 && r.at[claimIDAt] >= 0 {
+			r.row.Nil = true
+			r.find(field, value, NilClaimRule, Warns, "closed without payment, or nothing paid or reserved yet: kept as this claim's valuation, not part of a severity")
+			return
+		}
 		r.find(field, value, NilClaimRule, Blocks, "closed without payment, or nothing paid or reserved yet: counted here, not part of a severity")
 	case claims.NegativeAmount:
 		r.find(field, value, NegativeAmount, Blocks, "below zero: a recovery stands in its claim's amount, not in a row of its own")

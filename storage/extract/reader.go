@@ -48,6 +48,7 @@ type Row struct {
 	Observation severity.Observation // of an accepted row, by its incurred amount
 	Findings    []Finding
 	Rejected    bool
+	Nil         bool // accepted as a valuation at nothing: there is no Observation
 
 	cells [][]byte
 }
@@ -257,7 +258,9 @@ func (r *Reader) account() {
 		report.Rejected++
 	} else {
 		report.Accepted++
-		if r.row.Observation.Censored {
+		if r.row.Nil {
+			report.Nil++
+		} else if r.row.Observation.Censored {
 			report.Censored++
 		} else {
 			report.Uncensored++

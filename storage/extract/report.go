@@ -15,6 +15,7 @@ type Report struct {
 
 	Uncensored int `json:"uncensored"` // of the accepted, by their incurred amount
 	Censored   int `json:"censored"`
+	Nil        int `json:"nil"` // accepted and valued at nothing
 
 	// Totals of the money columns. Rows of totals are rejected and stand
 	// apart: their amounts are in no total.
