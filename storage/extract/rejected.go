@@ -50,20 +50,33 @@ func Reasons(findings []Finding) string {
 }
 
 // Guard keeps a spreadsheet from running a text as a formula: it is prefixed
-// with ' when it begins with = + - @ tab or carriage return and is no number.
+// with ' when it begins with = @ tab or a line end, or with + or - and is no
+// number in any style.
 func Guard(text string) string {
 	if text == "" {
 		return text
 	}
 	switch text[0] {
-	case '=', '@', '\t', '\r':
+	case '=', '@', '\t', '\r', '\n':
 		return "'" + text
 	case '+', '-':
-		if _, err := strconv.ParseFloat(text, 64); err != nil {
+		if !harmless(text[1:]) {
 			return "'" + text
 		}
 	}
 	return text
+}
+
+// harmless tells that what follows a sign holds digits and marks only, or is
+// the rest of a number in scientific notation, so that nothing can be run.
+func harmless(text string) bool {
+	mantissa, exponent, scientific := strings.Cut(strings.ToUpper(text), "E")
+	if scientific {
+		if _, err := strconv.Atoi(exponent); err != nil || mantissa == "" {
+			return false
+		}
+	}
+	return strings.Trim(mantissa, "0123456789., '\u00a0\u202f") == ""
 }
 
 func guardAll(texts []string) []string {

@@ -12,6 +12,7 @@ import (
 const (
 	mostSheetRows    = 1 << 20
 	mostSheetColumns = 1 << 14
+	mostSheetCells   = 1 << 28 // ours: a few bytes of a sheet can name a row's last column
 )
 
 // workbook yields the rows of one sheet. Numbers come with the decimal mark of
@@ -25,8 +26,10 @@ type workbook struct {
 	from1904 bool
 	inRows   bool // behind <sheetData>
 	ended    bool
+	failed   error
 	line     int // of the row last begun
 	cells    [][]byte
+	passed   int    // cells of all rows so far, gaps included
 	texts    []byte // of the cells of the row
 	spans    []span // of each cell in texts
 	marks    repairs
@@ -70,11 +73,12 @@ func (w *workbook) repaired() repairs { return w.marks }
 
 // broken is the error of a sheet that cannot be read on.
 func (w *workbook) broken(why any) error {
-	return &FileError{Line: w.line, Found: fmt.Sprintf("the sheet cannot be read behind this line (%v)", why), Accepted: "accepted are whole XLSX workbooks"}
+	w.failed = &FileError{Line: w.line, Found: fmt.Sprintf("the sheet cannot be read behind this line (%v)", why), Accepted: "accepted are whole XLSX workbooks"}
+	return w.failed
 }
 
 func (w *workbook) next() ([][]byte, int, error) {
-	for !w.ended {
+	for !w.ended && w.failed == nil {
 		token, err := w.scan.next()
 		switch {
 		case err != nil:
@@ -100,6 +104,9 @@ func (w *workbook) next() ([][]byte, int, error) {
 			}
 			return w.collect(), w.line, nil
 		}
+	}
+	if w.failed != nil {
+		return nil, w.line, w.failed
 	}
 	return nil, w.line, io.EOF
 }
@@ -154,6 +161,10 @@ func (w *workbook) row() error {
 			}
 			for len(w.spans) <= column {
 				w.spans = append(w.spans, span{})
+				w.passed++
+			}
+			if w.passed > mostSheetCells {
+				return fmt.Errorf("more than %d cells", mostSheetCells)
 			}
 			kind := cellKind(w.scan.attr("t"))
 			if !w.scan.selfClose {

@@ -30,7 +30,7 @@ type splitter struct {
 }
 
 func newSplitter(in io.Reader, delimiter byte) *splitter {
-	return &splitter{in: in, delimiter: delimiter, newline: '\n', buffer: make([]byte, 1<<18), line: 1}
+	return &splitter{in: in, delimiter: delimiter, newline: '\n', buffer: make([]byte, 1<<16), line: 1}
 }
 
 func (s *splitter) Close() error { return nil }
