@@ -33,9 +33,6 @@ const (
 var Fields = []Field{ClaimID, LossDate, ReportDate, CloseDate, Status, Business, Segment, Paid, Outstanding, Incurred,
 	Amount, Deductible, Limit, LimitReached, DeductibleType, Weight, Currency}
 
-// isDate tells whether the field holds dates.
-func (f Field) isDate() bool { return f == LossDate || f == ReportDate || f == CloseDate }
-
 // isMoney tells whether the field holds amounts of money.
 func (f Field) isMoney() bool {
 	switch f {
