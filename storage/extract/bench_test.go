@@ -2,6 +2,7 @@ package extract
 
 import (
 	"bytes"
+	"encoding/csv"
 	"fmt"
 	"io"
 	"math/rand/v2"
@@ -156,6 +157,57 @@ func BenchmarkMemory(b *testing.B) {
 			b.ReportMetric(peak(), "MiB-heap")
 		})
 	}
+}
+
+// bigWorkbook is a workbook of n claims in the columns of writeBig; the texts
+// are shared strings, as spreadsheets write them.
+func bigWorkbook(b *testing.B, n int) []byte {
+	var text, sheet, shared bytes.Buffer
+	writeBig(&text, n)
+	rows, err := csv.NewReader(&text).ReadAll()
+	if err != nil {
+		b.Fatal(err)
+	}
+	known := map[string]int{}
+	sheet.WriteString(`<worksheet><sheetData>`)
+	shared.WriteString(`<sst>`)
+	for i, row := range rows {
+		fmt.Fprintf(&sheet, `<row r="%d" spans="1:12">`, i+1)
+		for column, cell := range row {
+			at := fmt.Sprintf("%c%d", 'A'+column, i+1)
+			if i > 0 && column >= 7 && column <= 10 {
+				fmt.Fprintf(&sheet, `<c r="%s" s="1"><v>%s</v></c>`, at, cell)
+				continue
+			}
+			if _, ok := known[cell]; !ok {
+				known[cell] = len(known)
+				fmt.Fprintf(&shared, `<si><t>%s</t></si>`, cell)
+			}
+			fmt.Fprintf(&sheet, `<c r="%s" t="s"><v>%d</v></c>`, at, known[cell])
+		}
+		sheet.WriteString(`</row>`)
+	}
+	sheet.WriteString(`</sheetData></worksheet>`)
+	shared.WriteString(`</sst>`)
+	return handmade(b, sheet.String(), shared.String(), "")
+}
+
+// BenchmarkWorkbook reads, parses and checks a workbook of 200,000 claims and
+// reports the largest heap seen.
+func BenchmarkWorkbook(b *testing.B) {
+	file := bigWorkbook(b, 200_000)
+	plan := benchPlan()
+	plan.Format = Format{Kind: Workbook, Sheet: "claims", Decimal: ".", HeaderLine: 1}
+	defer runtime.GOMAXPROCS(runtime.GOMAXPROCS(1))
+	runtime.GC()
+	peak := watchHeap(b)
+	b.ReportAllocs()
+	rows := 0
+	for b.Loop() {
+		rows += readThrough(b, bytes.NewReader(file), int64(len(file)), plan)
+	}
+	b.ReportMetric(float64(rows)/b.Elapsed().Seconds(), "rows/s")
+	b.ReportMetric(peak(), "MiB-heap")
 }
 
 // watchHeap samples the heap in use until the returned function is called,
