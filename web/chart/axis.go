@@ -9,16 +9,25 @@ import (
 // axis maps values to coordinates, linearly or by logarithm.
 type axis struct {
 	from, to float64 // values at the ends
-	at, end  float64 // coordinates of the ends
 	log      bool
+
+	origin, start, perUnit float64
+}
+
+// newAxis maps the values from and to to the coordinates at and end.
+func newAxis(from, to, at, end float64, log bool) axis {
+	a := axis{from: from, to: to, log: log, origin: from, start: at, perUnit: (end - at) / (to - from)}
+	if log {
+		a.origin, a.perUnit = math.Log(from), (end-at)/math.Log(to/from)
+	}
+	return a
 }
 
 func (a axis) place(v float64) float64 {
-	from, to := a.from, a.to
 	if a.log {
-		from, to, v = math.Log(from), math.Log(to), math.Log(v)
+		v = math.Log(v)
 	}
-	return a.at + (v-from)/(to-from)*(a.end-a.at)
+	return a.start + (v-a.origin)*a.perUnit
 }
 
 type tick struct {
@@ -79,31 +88,51 @@ func logTicks(from, to float64, n int) []tick {
 	return ticks
 }
 
-// Short writes a value in few characters: 2.5k, 10m, 0.001.
-func Short(v float64) string {
-	size := math.Abs(v)
-	for _, u := range []struct {
+// Short writes a value to three digits in few characters: 2.5k, 10m, 0.001.
+func Short(v float64) string { return string(appendShort(nil, v)) }
+
+func appendShort(to []byte, v float64) []byte {
+	if v < 0 {
+		to, v = append(to, '-'), -v
+	}
+	for _, u := range [...]struct {
 		unit  float64
 		label string
-	}{{1e12, "tn"}, {1e9, "bn"}, {1e6, "m"}, {1e3, "k"}} {
-		if size >= u.unit*0.9995 {
-			return trimmed(v/u.unit, 3) + u.label
+	}{{1e12, "tn"}, {1e9, "bn"}, {1e6, "m"}, {1e3, "k"}, {1, ""}} {
+		if v >= u.unit*0.9995 {
+			return append(appendThree(to, v/u.unit), u.label...)
 		}
 	}
-	if size != 0 && size < 1e-4 {
-		return strings.Replace(strconv.FormatFloat(v, 'g', 2, 64), "e-0", "e-", 1)
+	if v != 0 && v < 1e-4 {
+		short := strconv.FormatFloat(v, 'g', 2, 64)
+		return append(to, strings.Replace(short, "e-0", "e-", 1)...)
 	}
-	return trimmed(v, 3)
-}
-
-func trimmed(v float64, digits int) string {
-	return strconv.FormatFloat(roundTo(v, digits), 'f', -1, 64)
-}
-
-func roundTo(v float64, digits int) float64 {
-	rounded, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', digits, 64), 64)
+	// Below one the three digits stand behind zeros.
+	rounded, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 3, 64), 64)
 	if err != nil {
-		return v
+		rounded = v
 	}
-	return rounded
+	return strconv.AppendFloat(to, rounded, 'f', -1, 64)
+}
+
+// appendThree writes a value from one on to three digits.
+func appendThree(to []byte, v float64) []byte {
+	hundredths := int64(math.Round(v * 100))
+	switch {
+	case v >= 99.95:
+		hundredths = 100 * int64(math.Round(v))
+	case v >= 9.995:
+		hundredths = 10 * int64(math.Round(v*10))
+	}
+	if v >= 1e6 {
+		return strconv.AppendFloat(to, v, 'g', 3, 64) // beyond the largest unit
+	}
+	to = strconv.AppendInt(to, hundredths/100, 10)
+	if rest := hundredths % 100; rest != 0 {
+		to = append(to, '.', byte('0'+rest/10))
+		if rest%10 != 0 {
+			to = append(to, byte('0'+rest%10))
+		}
+	}
+	return to
 }

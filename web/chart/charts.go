@@ -46,8 +46,8 @@ func QQ(points []evidence.QQPoint, currency string) string {
 	if most == 0 {
 		most = 1
 	}
-	x := axis{from: 0, to: most * 1.03, at: plotLeft, end: plotRight}
-	y := axis{from: 0, to: most * 1.03, at: plotBottom, end: plotTop}
+	x := newAxis(0, most*1.03, plotLeft, plotRight, false)
+	y := newAxis(0, most*1.03, plotBottom, plotTop, false)
 	s.frame(x, y, "fitted quantile, "+currency, "observed loss, "+currency)
 	s.line("equality", x.place(0), y.place(0), x.place(most*1.03), y.place(most*1.03))
 	for _, p := range points {
@@ -58,8 +58,7 @@ func QQ(points []evidence.QQPoint, currency string) string {
 		if p.Censored {
 			class, kind = "limited", "at least"
 		}
-		s.mark(class, x.place(p.Fitted), y.place(p.Observed), markRadius,
-			fmt.Sprintf("%s %s, fitted %s", kind, Short(p.Observed), Short(p.Fitted)))
+		s.markPair(class, x.place(p.Fitted), y.place(p.Observed), markRadius, kind, p.Observed, "fitted", p.Fitted)
 	}
 	return s.end()
 }
@@ -88,13 +87,14 @@ func Survival(points []evidence.SurvivalPoint, currency string) string {
 	if low > 0.5 {
 		low = 0.5
 	}
-	x := axis{from: least, to: most * 1.05, at: plotLeft, end: plotRight, log: true}
-	y := axis{from: low, to: 1.05, at: plotBottom, end: plotTop, log: true}
+	x := newAxis(least, most*1.05, plotLeft, plotRight, true)
+	y := newAxis(low, 1.05, plotBottom, plotTop, true)
 	s.frame(x, y, "loss, "+currency, "probability of a larger loss")
 	s.clip("survival-clip", plotLeft, plotTop, plotRight-plotLeft, plotBottom-plotTop)
 	inside := func(v float64) float64 { return y.place(math.Max(v, low*0.5)) }
 
-	var steps, upper, lower, fitted []float64
+	n := 4 * len(points)
+	steps, upper, lower, fitted := make([]float64, 0, n+2), make([]float64, 0, n), make([]float64, 0, n/2), make([]float64, 0, n/2)
 	before := 1.0
 	for i, p := range points {
 		at := x.place(p.Loss)
