@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"slices"
 	"strconv"
+	"strings"
 	"unicode/utf8"
 
 	"spillway/severity/claims"
@@ -157,14 +158,8 @@ func (r *Reader) readTexts() {
 			r.find(Fields[at], cell, PossibleFormula, Warns, "a text that a spreadsheet would run as a formula; it is kept as text and guarded in exports")
 		}
 	}
-	if r.at[currencyAt] >= 0 && r.currency != "" {
-		switch cell := r.cells[currencyAt]; {
-		case string(cell) == r.currency:
-		case bytes.EqualFold(cell, []byte(r.currency)):
-			r.tallies.repairs[currencyCase]++
-		default:
-			r.find(Currency, cell, OtherCurrency, Blocks, fmt.Sprintf("the batch is in %s; amounts of another currency, or of none stated, are not mixed with it", r.currency))
-		}
+	if r.at[currencyAt] >= 0 {
+		r.checkCurrency(r.cells[currencyAt])
 	}
 	if r.at[weightAt] >= 0 {
 		w, ok := r.readWeight(r.cells[weightAt])
@@ -173,6 +168,23 @@ func (r *Reader) readTexts() {
 			w = 1
 		}
 		c.Weight = w
+	}
+}
+
+// checkCurrency wants every row in the currency of the batch; where none was
+// stated, in that of the first row that names one.
+func (r *Reader) checkCurrency(cell []byte) {
+	if r.currency == "" {
+		r.currency = strings.ToUpper(string(cell))
+	}
+	switch {
+	case len(cell) > 0 && string(cell) == r.currency:
+	case len(cell) > 0 && bytes.EqualFold(cell, []byte(r.currency)):
+		r.tallies.repairs[currencyCase]++
+	case len(cell) == 0:
+		r.find(Currency, cell, OtherCurrency, Blocks, "no currency is stated, though the extract has a column for it; such amounts are not mixed with others")
+	default:
+		r.find(Currency, cell, OtherCurrency, Blocks, fmt.Sprintf("the batch is in %s; amounts of another currency are not mixed with it", r.currency))
 	}
 }
 

@@ -75,7 +75,7 @@ func (r *Reader) findMoney() {
 		}
 		cell := r.cells[at]
 		if m.state == unreadable {
-			r.find(f, cell, AmountUnreadable, Blocks, fmt.Sprintf("%v; %s", m.err, r.acceptedAmounts()))
+			r.find(f, cell, AmountUnreadable, Blocks, fmt.Sprintf("%v; %s", m.err, r.acceptedAmounts(f)))
 			continue
 		}
 		if m.notes != (amountNotes{}) {
@@ -124,12 +124,16 @@ func (r *Reader) findMinorUnits(f Field, cell []byte, m *moneyCell) {
 	}
 }
 
-func (r *Reader) acceptedAmounts() string {
+func (r *Reader) acceptedAmounts(f Field) string {
 	thousands := "no mark of thousands"
 	if t := r.plan.Format.Thousands; t != "" {
 		thousands = fmt.Sprintf("%q between thousands", t)
 	}
-	return fmt.Sprintf("accepted are numbers with %q before the decimals and %s", r.plan.Format.Decimal, thousands)
+	accepted := fmt.Sprintf("accepted are numbers with %q before the decimals and %s", r.plan.Format.Decimal, thousands)
+	if f == Limit || f == Deductible {
+		accepted += "; for none, leave the cell blank and decide that blank means none"
+	}
+	return accepted
 }
 
 // setAmounts settles paid and outstanding from whatever columns there are.

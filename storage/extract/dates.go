@@ -10,7 +10,8 @@ import (
 	"spillway/severity/claims"
 )
 
-// dateParts are the three numbers of a date as written.
+// dateParts are the three numbers of a date as written; year, month and day
+// where yearFirst.
 type dateParts struct {
 	a, b, c   int
 	yearFirst bool
@@ -19,6 +20,14 @@ type dateParts struct {
 // splitDate takes a date apart; ok is false for a cell that is no date in any
 // accepted form. A time of day behind the date is left out.
 func splitDate(cell []byte) (p dateParts, ok bool) {
+	if colon := bytes.IndexByte(cell, ':'); colon > 0 {
+		if gap := bytes.LastIndexAny(cell[:colon], " T"); gap >= 8 {
+			cell = cell[:gap]
+		}
+	}
+	if p, ok := namedMonth(cell); ok {
+		return p, true
+	}
 	for i, c := range cell {
 		if (c == ' ' || c == 'T') && i >= 8 {
 			cell = cell[:i]
@@ -61,6 +70,40 @@ func splitDate(cell []byte) (p dateParts, ok bool) {
 	return p, false
 }
 
+// namedMonth takes apart 5-Jan-2024, 05JAN2024, 5 January 2024 and January 5,
+// 2024: whatever the order, nothing is in doubt.
+func namedMonth(cell []byte) (p dateParts, ok bool) {
+	first := bytes.IndexFunc(cell, func(r rune) bool { return r|0x20 >= 'a' && r|0x20 <= 'z' })
+	if first < 0 || first > 3 || len(cell) > 18 {
+		return p, false
+	}
+	last := first
+	for last < len(cell) && cell[last]|0x20 >= 'a' && cell[last]|0x20 <= 'z' {
+		last++
+	}
+	month := monthOf(bytes.ToLower(cell[first:last]))
+	day, year := bytes.Trim(cell[:first], " -./"), bytes.Trim(cell[last:], " -./,")
+	if first == 0 {
+		day, year, _ = bytes.Cut(year, []byte(" "))
+		day = bytes.TrimRight(day, ",")
+	}
+	if month == 0 || len(day) > 2 || len(year) != 4 || !digitsOnly(day) || !digitsOnly(year) {
+		return p, false
+	}
+	return dateParts{atoi(year), month, atoi(day), true}, true
+}
+
+// monthOf is the number of a month by its English name or the first three
+// letters of it; 0 for none.
+func monthOf(name []byte) int {
+	for i, month := range [...]string{"january", "february", "march", "april", "may", "june", "july", "august", "september", "october", "november", "december"} {
+		if string(name) == month || string(name) == month[:3] {
+			return i + 1
+		}
+	}
+	return 0
+}
+
 func digitsOnly(b []byte) bool {
 	for _, c := range b {
 		if c < '0' || c > '9' {
@@ -78,7 +121,7 @@ func atoi(b []byte) int {
 	return n
 }
 
-const acceptedDates = "accepted are 2025-06-30, 20250630 and, once their order is decided, 30/06/2025 or 06/30/2025 with / . or - and a year of four digits"
+const acceptedDates = "accepted are 2025-06-30, 20250630, 30-Jun-2025 and, once their order is decided, 30/06/2025 or 06/30/2025 with / . or - and a year of four digits"
 
 // readDate turns a trimmed, non-empty cell into a date.
 func readDate(cell []byte, f Format, from1904 bool) (claims.Date, error) {

@@ -2,6 +2,7 @@ package extract
 
 import (
 	"bytes"
+	"encoding/binary"
 	"io"
 	"unicode/utf8"
 
@@ -55,21 +56,20 @@ func (s *skipMark) Read(p []byte) (int, error) {
 }
 
 // guessEncoding reads the whole file: a byte that is no UTF-8 may stand
-// anywhere.
-func guessEncoding(file io.ReaderAt, size int64) (Encoding, error) {
+// anywhere. Mixed tells that the file has characters beyond ASCII in UTF-8 and
+// bytes that are none.
+func guessEncoding(file io.ReaderAt, size int64) (e Encoding, mixed bool, err error) {
 	head := make([]byte, min(size, 4096))
 	n, err := file.ReadAt(head, 0)
 	if err != nil && err != io.EOF {
-		return "", err
+		return "", false, err
 	}
 	head = head[:n]
 	switch {
-	case bytes.HasPrefix(head, utf8Mark):
-		return UTF8, nil
 	case bytes.HasPrefix(head, []byte{0xFF, 0xFE}):
-		return UTF16LE, nil
+		return UTF16LE, false, nil
 	case bytes.HasPrefix(head, []byte{0xFE, 0xFF}):
-		return UTF16BE, nil
+		return UTF16BE, false, nil
 	}
 	even, odd := 0, 0
 	for i, b := range head {
@@ -81,40 +81,72 @@ func guessEncoding(file io.ReaderAt, size int64) (Encoding, error) {
 	}
 	switch half := len(head) / 2; {
 	case odd > half/2 && even == 0:
-		return UTF16LE, nil
+		return UTF16LE, false, nil
 	case even > half/2 && odd == 0:
-		return UTF16BE, nil
+		return UTF16BE, false, nil
 	case even+odd > 0:
-		return "", &FileError{Found: "bytes that are no text", Accepted: "accepted are delimited text (CSV) and XLSX workbooks"}
+		return "", false, &FileError{Found: "bytes that are no text", Accepted: "accepted are delimited text (CSV) and XLSX workbooks"}
 	}
-	in := io.NewSectionReader(file, 0, size)
+	bad, wide, err := countUTF8(io.NewSectionReader(file, 0, size))
+	if err != nil {
+		return "", false, err
+	}
+	marked := bytes.HasPrefix(head, utf8Mark)
+	switch {
+	case bad == 0:
+		return UTF8, false, nil
+	case marked || wide > 2*bad:
+		return UTF8, true, nil
+	}
+	return Windows1252, wide > bad/8, nil
+}
+
+// countUTF8 counts the bytes that belong to no UTF-8 character and the
+// characters of several bytes.
+func countUTF8(in io.Reader) (bad, wide int, err error) {
 	buffer := make([]byte, 1<<18)
-	kept := 0
-	for {
+	for kept := 0; ; {
 		n, err := in.Read(buffer[kept:])
+		if err != nil && err != io.EOF {
+			return 0, 0, err
+		}
 		part := buffer[:kept+n]
-		if err == io.EOF {
-			if utf8.Valid(part) {
-				return UTF8, nil
-			}
-			return Windows1252, nil
-		}
-		if err != nil {
-			return "", err
-		}
-		// A character may be cut at the end of the part.
-		end := len(part)
-		for cut := 1; cut < utf8.UTFMax && cut <= len(part); cut++ {
-			if utf8.RuneStart(part[len(part)-cut]) {
-				if !utf8.FullRune(part[len(part)-cut:]) {
-					end = len(part) - cut
-				}
+		ended := err == io.EOF
+		kept = 0
+		for len(part) > 0 {
+			i := beyondASCII(part)
+			part = part[i:]
+			if len(part) == 0 {
 				break
 			}
+			if !ended && !utf8.FullRune(part) { // cut at the end of the buffer
+				kept = copy(buffer, part)
+				break
+			}
+			c, width := utf8.DecodeRune(part)
+			if c == utf8.RuneError && width == 1 {
+				bad++
+			} else {
+				wide++
+			}
+			part = part[width:]
 		}
-		if !utf8.Valid(part[:end]) {
-			return Windows1252, nil
+		if ended {
+			return bad, wide, nil
 		}
-		kept = copy(buffer, part[end:])
 	}
+}
+
+// beyondASCII is the place of the first byte beyond ASCII, or the length.
+func beyondASCII(part []byte) int {
+	i := 0
+	for ; i+8 <= len(part); i += 8 {
+		if binary.NativeEndian.Uint64(part[i:])&0x8080808080808080 != 0 {
+			break
+		}
+	}
+	for i < len(part) && part[i] < utf8.RuneSelf {
+		i++
+	}
+	return i
 }

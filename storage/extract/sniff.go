@@ -19,7 +19,7 @@ type Guess struct {
 
 // Doubt is a question that the file does not answer.
 type Doubt struct {
-	About    string   `json:"about"` // "date_order", "decimal", "columns", "sheet", "dates"
+	About    string   `json:"about"` // "date_order", "decimal", "columns", "sheet", "dates", "encoding"
 	Question string   `json:"question"`
 	Choices  []string `json:"choices"` // none where only a better file helps
 }
@@ -30,34 +30,32 @@ const (
 )
 
 // Sniff guesses how a file is written and what its columns hold. It reads all
-// of a text file for its encoding, and the first rows for the rest.
+// of a text file for its encoding, and the first rows for the rest. The name
+// is not believed: the bytes tell what the file is.
 func Sniff(file io.ReaderAt, size int64, name string) (Guess, error) {
-	format, sheets, hidden, err := sniffKind(file, size)
-	if err != nil {
-		return Guess{}, err
-	}
-	return sniffRows(file, size, format, sheets, hidden, "", nil)
+	return SniffAs(file, size, Format{}, nil)
 }
 
 // SniffAs is Sniff with what the user says of the file in place of the guess:
 // encoding, delimiter, header line, sheet and single columns are taken as
 // given where set, and marks and dates guessed from the columns so mapped.
 func SniffAs(file io.ReaderAt, size int64, given Format, columns ColumnMap) (Guess, error) {
-	format, sheets, hidden, err := sniffKind(file, size)
+	k, err := sniffKind(file, size)
 	if err != nil {
 		return Guess{}, err
 	}
-	if given.Encoding != "" && format.Kind == Delimited {
-		format.Encoding = given.Encoding
+	if given.Encoding != "" && k.format.Kind == Delimited {
+		k.format.Encoding, k.mixed = given.Encoding, false
 	}
 	if given.Sheet != "" {
-		format.Sheet = given.Sheet
+		k.format.Sheet = given.Sheet
 	}
-	format.Delimiter, format.HeaderLine = given.Delimiter, given.HeaderLine
-	return sniffRows(file, size, format, sheets, hidden, given.Sheet, columns)
+	k.format.Delimiter, k.format.HeaderLine = given.Delimiter, given.HeaderLine
+	return sniffRows(file, size, k, given.Sheet != "", columns)
 }
 
-func sniffRows(file io.ReaderAt, size int64, format Format, sheets []string, hidden int, stated string, columns ColumnMap) (Guess, error) {
+func sniffRows(file io.ReaderAt, size int64, k kind, sheetStated bool, columns ColumnMap) (Guess, error) {
+	format := k.format
 	format.Decimal, format.Thousands = ".", ""
 	if format.Kind == Delimited && format.Delimiter == "" {
 		d, err := guessDelimiter(file, size, format)
@@ -82,7 +80,7 @@ func sniffRows(file io.ReaderAt, size int64, format Format, sheets []string, hid
 		return Guess{}, &FileError{Found: "no header line", Accepted: "a line with a text over each column, and data rows below it"}
 	}
 	format.HeaderLine = lines[at]
-	g := Guess{Format: format, Sheets: sheets, Hidden: hidden, Header: rows[at]}
+	g := Guess{Format: format, Sheets: k.sheets, Hidden: k.hidden, Header: rows[at]}
 	data := rows[at+1:]
 	g.Sample = data[:min(len(data), sampleRows)]
 	g.Columns = guessColumns(g.Header)
@@ -90,10 +88,15 @@ func sniffRows(file io.ReaderAt, size int64, format Format, sheets []string, hid
 	g.guessMarks(data)
 	g.guessDates(data)
 	g.doubtColumns()
-	if len(sheets) > 1 && stated == "" {
+	if len(k.sheets) > 1 && !sheetStated {
 		g.Doubts = append(g.Doubts, Doubt{About: "sheet",
-			Question: fmt.Sprintf("The workbook has %d sheets, and one is read: %q. Which one holds the claims?", len(sheets), format.Sheet),
-			Choices:  sheets})
+			Question: fmt.Sprintf("The workbook has %d sheets, and one is read: %q. Which one holds the claims?", len(k.sheets), format.Sheet),
+			Choices:  k.sheets})
+	}
+	if k.mixed {
+		g.Doubts = append(g.Doubts, Doubt{About: "encoding",
+			Question: fmt.Sprintf("The file has texts in UTF-8 and bytes that are none: two encodings in one file. Read as %s, texts of the other look wrong or end the reading at their line. Which one is it?", format.Encoding),
+			Choices:  []string{string(UTF8), string(Windows1252)}})
 	}
 	return g, nil
 }

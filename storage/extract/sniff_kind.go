@@ -6,16 +6,24 @@ import (
 	"io"
 )
 
+// kind is what the bytes of a file say before any row is cut.
+type kind struct {
+	format Format
+	sheets []string // that are not hidden
+	hidden int      // sheets that are
+	mixed  bool     // encodings in one text
+}
+
 // sniffKind tells workbooks from text by their first bytes, and text's
 // encoding, and names what is neither.
-func sniffKind(file io.ReaderAt, size int64) (f Format, sheets []string, hidden int, err error) {
+func sniffKind(file io.ReaderAt, size int64) (k kind, err error) {
 	const accepted = "accepted are delimited text (CSV) and XLSX workbooks"
 	if size == 0 {
-		return f, nil, 0, &FileError{Found: "nothing: it is empty", Accepted: accepted}
+		return k, &FileError{Found: "nothing: it is empty", Accepted: accepted}
 	}
 	head := make([]byte, min(size, 8))
 	if _, err := file.ReadAt(head, 0); err != nil && !errors.Is(err, io.EOF) {
-		return f, nil, 0, err
+		return k, err
 	}
 	for _, known := range []struct{ mark, what, advice string }{
 		{"\xD0\xCF\x11\xE0", "an old XLS workbook or another OLE file", "save it as XLSX or CSV; " + accepted},
@@ -32,26 +40,26 @@ func sniffKind(file io.ReaderAt, size int64) (f Format, sheets []string, hidden 
 		{"PAR1", "a Parquet file", accepted},
 	} {
 		if bytes.HasPrefix(head, []byte(known.mark)) {
-			return f, nil, 0, &FileError{Found: known.what, Accepted: known.advice}
+			return k, &FileError{Found: known.what, Accepted: known.advice}
 		}
 	}
 	if bytes.HasPrefix(head, []byte("PK\x03\x04")) {
 		b, err := openBook(file, size)
 		if err != nil {
-			return f, nil, 0, err
+			return k, err
 		}
-		sheets, hidden = b.visible()
+		sheets, hidden := b.visible()
 		if len(sheets) == 0 {
-			return f, nil, 0, &FileError{Found: "a workbook without a visible sheet", Accepted: accepted}
+			return k, &FileError{Found: "a workbook without a visible sheet", Accepted: accepted}
 		}
-		return Format{Kind: Workbook, Sheet: sheets[0]}, sheets, hidden, nil
+		return kind{format: Format{Kind: Workbook, Sheet: sheets[0]}, sheets: sheets, hidden: hidden}, nil
 	}
 	switch first := bytes.TrimLeft(bytes.TrimPrefix(head, utf8Mark), " \t\r\n"); {
 	case len(first) > 0 && first[0] == '<':
-		return f, nil, 0, &FileError{Found: "a page of markup (HTML or XML), whatever its name says", Accepted: "open it in a spreadsheet and save it as XLSX or CSV; " + accepted}
+		return k, &FileError{Found: "a page of markup (HTML or XML), whatever its name says", Accepted: "open it in a spreadsheet and save it as XLSX or CSV; " + accepted}
 	case len(first) > 0 && (first[0] == '{' || first[0] == '['):
-		return f, nil, 0, &FileError{Found: "structured text (JSON or the like)", Accepted: accepted}
+		return k, &FileError{Found: "structured text (JSON or the like)", Accepted: accepted}
 	}
-	encoding, err := guessEncoding(file, size)
-	return Format{Kind: Delimited, Encoding: encoding}, nil, 0, err
+	encoding, mixed, err := guessEncoding(file, size)
+	return kind{format: Format{Kind: Delimited, Encoding: encoding}, mixed: mixed}, err
 }

@@ -45,6 +45,8 @@ func TestSniffFormat(t *testing.T) {
 		{"pipe", "claim_id|paid\nA|1\n", `utf-8 "|" "." "" "" 1 []`},
 		{"byte order mark", "\ufeffclaim_id,paid\nA,1\n", `utf-8 "," "." "" "" 1 []`},
 		{"windows-1252", "claim_id,line,paid\nA,Geb\xe4ude,1\n", `windows-1252 "," "." "" "" 1 []`},
+		{"two encodings", "claim_id,line,paid\nA,Geb\xc3\xa4ude,1\nB,Geb\xe4ude,1\n", `windows-1252 "," "." "" "" 1 [encoding]`},
+		{"mostly utf-8", "claim_id,line,paid\nA,Gr\u00f6\u00dfe \u00fcber\u00e4ll,1\n", `utf-8 "," "." "" "" 1 []`},
 		{"utf-16 le, marked", utf16Of("\ufeffclaim_id,paid\nA,1\n", true), `utf-16le "," "." "" "" 1 []`},
 		{"utf-16 be, marked", utf16Of("\ufeffclaim_id,paid\nA,1\n", false), `utf-16be "," "." "" "" 1 []`},
 		{"utf-16 le, bare", utf16Of("claim_id,paid\nA,1\n", true), `utf-16le "," "." "" "" 1 []`},
