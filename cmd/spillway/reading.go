@@ -154,6 +154,12 @@ func (r *reading) refuseDoubts(doubts []extract.Doubt, columns extract.ColumnMap
 			return fmt.Errorf("%s Say --decimal . or --decimal ,", d.Question)
 		case d.About == "date_order" && r.DateOrder == "auto" && hasDate(columns):
 			return fmt.Errorf("%s Say --date-order day-first or month-first", d.Question)
+		case d.About == "dates" && hasDate(columns):
+			return fmt.Errorf("%s Or leave them unread: --columns loss_date=,report_date=,close_date=", d.Question)
+		case d.About == "sheet":
+			return fmt.Errorf("%s Say --sheet NAME", d.Question)
+		case d.About == "encoding":
+			return fmt.Errorf("%s Say --encoding utf-8 or --encoding windows-1252", d.Question)
 		}
 	}
 	return nil
