@@ -2,6 +2,7 @@ package severity
 
 import (
 	"math"
+	"strings"
 
 	"gonum.org/v1/gonum/stat/distuv"
 )
@@ -39,27 +40,41 @@ func (p profiler) interval(along, other [2]float64, se float64, edge bool) Inter
 	t := (p.top.x0*other[1] - p.top.x1*other[0]) / det
 	s := (along[0]*p.top.x1 - along[1]*p.top.x0) / det
 	c := profileCurve{p, along, other}
+	i := Interval{Level: p.level, Method: "profile likelihood"}
 	// As the shape goes to zero so does the mean: where even that edge is not
 	// unlikely enough, shape and mean have no lower end to look for.
-	var lower float64
-	okLower := !edge || p.boundary == nil || p.top.point.value-p.boundary.LogLikelihood > p.drop
-	if okLower {
-		lower, okLower = c.end(t, s, -se)
+	lower, below := 0.0, nowhereLow
+	if !edge || p.boundary == nil || p.top.point.value-p.boundary.LogLikelihood > p.drop {
+		lower, below = c.end(t, s, -se)
 	}
-	upper, okUpper := c.end(t, s, se)
-	i := Interval{Lower: math.Exp(lower), Upper: math.Exp(upper), Level: p.level, Method: "profile likelihood"}
-	switch {
-	case !okLower && !okUpper:
-		i.Lower, i.Upper = 0, math.Inf(1)
-		i.Note = "the profile never falls far enough on either side"
-	case !okLower:
+	upper, above := c.end(t, s, se)
+	var notes []string
+	if i.Lower = math.Exp(lower); below != reached {
 		i.Lower = 0
-		i.Note = "the profile never falls far enough below the estimate: the data do not exclude values down to zero"
-	case !okUpper:
-		i.Upper = math.Inf(1)
-		i.Note = "the profile never falls far enough above the estimate: the data set no upper end"
+		notes = append(notes, "below the estimate "+below.note()+", so the data do not exclude values down to zero")
 	}
+	if i.Upper = math.Exp(upper); above != reached {
+		i.Upper = math.Inf(1)
+		notes = append(notes, "above the estimate "+above.note()+", so the data set no upper end")
+	}
+	i.Note = strings.Join(notes, "; ")
 	return i
+}
+
+// outcome says how the search for an end of an interval ended.
+type outcome int
+
+const (
+	reached    outcome = iota
+	nowhereLow         // the profile never falls far enough
+	lost               // the other parameter leaves the range of the doubles first
+)
+
+func (o outcome) note() string {
+	if o == lost {
+		return "the profile cannot be followed far enough in the range of numbers"
+	}
+	return "the profile never falls far enough"
 }
 
 type profileCurve struct {
@@ -77,21 +92,31 @@ func (c profileCurve) at(t, s float64) (value, slope, best float64) {
 		return last.value, last.g0*o[0] + last.g1*o[1],
 			last.h00*o[0]*o[0] + 2*last.h01*o[0]*o[1] + last.h11*o[1]*o[1]
 	}
-	lower, upper := math.Inf(-1), math.Inf(1)
+	// The scale stays in the range of the doubles, with room for the losses.
+	lower, upper := -690-t*c.along[1], 690-t*c.along[1]
+	if c.other[1] < 0 {
+		lower, upper = t*c.along[1]-690, t*c.along[1]+690
+	}
+	if c.other[1] == 0 {
+		lower, upper = math.Inf(-1), math.Inf(1)
+	}
 	if c.other[0] > 0 {
 		// The nuisance moves the shape: below e^-30 it is at its edge, where
 		// the likelihood no longer changes.
-		lower = math.Min(-30-t*c.along[0], s)
+		lower = math.Max(lower, math.Min(-30-t*c.along[0], s))
 	}
-	best, value, _ = maximise1(f, s, lower, upper)
+	best, value, _ = maximise1(f, math.Max(lower, math.Min(upper, s)), lower, upper)
 	f(best)
+	if c.other[1] != 0 && (best <= lower && c.other[0] == 0 || best >= upper) {
+		return math.NaN(), math.NaN(), best
+	}
 	return value, last.g0*c.along[0] + last.g1*c.along[1], best
 }
 
 // end walks from the estimate in the direction of step, first by standard
 // errors to bracket the end, then by safeguarded Newton on the signed root
 // r(t) = sqrt(2 (top - profile)), which is close to a straight line.
-func (c profileCurve) end(t0, s0, step float64) (float64, bool) {
+func (c profileCurve) end(t0, s0, step float64) (float64, outcome) {
 	top := c.top.point.value
 	target := math.Sqrt(2 * c.drop)
 	root := func(t, s float64) (r, slope, best float64) {
@@ -107,8 +132,8 @@ func (c profileCurve) end(t0, s0, step float64) (float64, bool) {
 	}
 	for range 400 {
 		r, slope, best := root(t, s)
-		if math.IsNaN(r) {
-			return 0, false
+		if !finite(r) || !finite(slope) {
+			return 0, lost
 		}
 		s = best
 		if r < target {
@@ -118,7 +143,7 @@ func (c profileCurve) end(t0, s0, step float64) (float64, bool) {
 		}
 		next := t + math.Copysign(1, step)*(target-r)/slope
 		if math.Abs(r-target) < 1e-12*target || math.Abs(next-t) < 1e-14*(1+math.Abs(t)) {
-			return next, true
+			return next, reached
 		}
 		if math.IsNaN(outside) {
 			// Ever longer strides in the logarithm, up to where a shape, scale
@@ -128,15 +153,15 @@ func (c profileCurve) end(t0, s0, step float64) (float64, bool) {
 			}
 			stride *= 1.5
 			if math.Abs(next-t0) > 200 {
-				return 0, false
+				return 0, nowhereLow
 			}
 		} else if lo, hi := math.Min(inside, outside), math.Max(inside, outside); !(next > lo && next < hi) {
 			next = (lo + hi) / 2
 			if hi-lo < 1e-14*(1+math.Abs(hi)) {
-				return next, true
+				return next, reached
 			}
 		}
 		t = next
 	}
-	return t, true
+	return t, reached
 }
