@@ -9,30 +9,32 @@ import (
 
 // partialSums is a summary in the making, of one run of observations.
 type partialSums struct {
-	counts      Summary // the plain counts, weights and extremes
-	excess      compensated
-	log         compensated
-	deviance    compensated
-	bad         *BadObservation
-	thresholds  tally
-	limits      tally
-	tight       bool // all exact losses lie close to the pivot
-	pivot       float64
-	anyUncensor bool
+	counts     Summary // the plain counts, weights and extremes
+	pivot      float64
+	ratio      compensated // Σ w x/pivot
+	log        compensated // Σ w ln(x/pivot)
+	tight      bool        // all exact losses lie close to the pivot: then also
+	excess     compensated // Σ w (x/pivot - 1)
+	deviance   compensated // Σ w (x/pivot - 1 - ln(x/pivot))
+	thresholds tally
+	limits     tally
+	bad        *BadObservation
 }
 
 func newPartialSums(pivot float64) *partialSums {
 	return &partialSums{pivot: pivot, tight: true}
 }
 
-// logsPerProduct ratios are multiplied before one logarithm is taken; each
-// multiplication costs the sum less than half a rounding of one logarithm.
-const logsPerProduct = 16
+// blockSize exact losses are taken together: their ratios to the pivot are
+// multiplied before one logarithm is taken, and added before one compensated
+// addition. Either costs less in rounding than a logarithm of each would.
+const blockSize = 16
 
 func (p *partialSums) add(obs []Observation, offset int) {
-	c := &p.counts
-	c.Smallest, c.Largest = math.Inf(1), 0
-	product, factors := 1.0, 0
+	var weight, eventWeight float64
+	var uncensored, censored, truncated int
+	smallest, largest := math.Inf(1), 0.0
+	product, ratios, inBlock := 1.0, 0.0, 0
 	for i := range obs {
 		o := &obs[i]
 		if !(o.Loss > 0 && o.Loss <= math.MaxFloat64 && o.Threshold >= 0 && o.Threshold <= o.Loss &&
@@ -40,45 +42,50 @@ func (p *partialSums) add(obs []Observation, offset int) {
 			p.bad = &BadObservation{offset + i, *o, problemOf(*o)}
 			return
 		}
-		c.Weight += o.Weight
+		weight += o.Weight
 		if o.Threshold > 0 {
-			c.Truncated++
+			truncated++
 			p.thresholds.add(o.Threshold, o.Weight)
 		}
 		if o.Censored {
-			c.Censored++
+			censored++
 			p.limits.add(o.Loss, o.Weight)
 			continue
 		}
-		c.Uncensored++
-		c.EventWeight += o.Weight
-		if o.Loss < c.Smallest {
-			c.Smallest = o.Loss
-		}
-		if o.Loss > c.Largest {
-			c.Largest = o.Loss
-		}
-		p.excess.add(o.Weight * ((o.Loss - p.pivot) / p.pivot))
+		uncensored++
+		eventWeight += o.Weight
+		smallest, largest = min(smallest, o.Loss), max(largest, o.Loss)
 		ratio := o.Loss / p.pivot
 		if o.Weight != 1 || ratio > 1e15 || ratio < 1e-15 {
+			p.ratio.add(o.Weight * ratio)
 			p.log.add(o.Weight * (math.Log(o.Loss) - math.Log(p.pivot)))
 			continue
 		}
 		product *= ratio
-		if factors++; factors == logsPerProduct {
+		ratios += ratio
+		if inBlock++; inBlock == blockSize {
+			p.ratio.add(ratios)
 			p.log.add(math.Log(product))
-			product, factors = 1, 0
+			product, ratios, inBlock = 1, 0, 0
 		}
 	}
+	p.ratio.add(ratios)
 	p.log.add(math.Log(product))
-	c.Claims = len(obs)
-	p.anyUncensor = c.Uncensored > 0
-	p.tight = !p.anyUncensor || c.Largest < 1.3*p.pivot && c.Smallest > 0.7*p.pivot
-	if p.tight {
-		for i := range obs {
-			if o := &obs[i]; !o.Censored {
-				p.deviance.add(o.Weight * special.LogDefect((o.Loss-p.pivot)/p.pivot))
-			}
+	p.counts = Summary{Claims: len(obs), Uncensored: uncensored, Censored: censored, Truncated: truncated,
+		Weight: weight, EventWeight: eventWeight, Smallest: smallest, Largest: largest}
+	if p.tight = uncensored == 0 || largest < 1.3*p.pivot && smallest > 0.7*p.pivot; p.tight {
+		p.addTight(obs)
+	}
+}
+
+// addTight sums excess and deviance of losses close to the pivot one by one:
+// as differences of sums they would lose the digits that such losses share.
+func (p *partialSums) addTight(obs []Observation) {
+	for i := range obs {
+		if o := &obs[i]; !o.Censored {
+			d := (o.Loss - p.pivot) / p.pivot
+			p.excess.add(o.Weight * d)
+			p.deviance.add(o.Weight * special.LogDefect(d))
 		}
 	}
 }
@@ -93,8 +100,9 @@ func (p *partialSums) merge(q *partialSums) {
 	c.EventWeight += d.EventWeight
 	c.Smallest = math.Min(c.Smallest, d.Smallest)
 	c.Largest = math.Max(c.Largest, d.Largest)
-	p.excess.merge(q.excess)
+	p.ratio.merge(q.ratio)
 	p.log.merge(q.log)
+	p.excess.merge(q.excess)
 	p.deviance.merge(q.deviance)
 	p.tight = p.tight && q.tight
 	p.thresholds.merge(&q.thresholds)
@@ -110,14 +118,13 @@ func (p *partialSums) summary() Summary {
 		return s
 	}
 	s.Pivot = p.pivot
-	s.SumExcess = p.excess.value()
 	if p.tight {
-		s.SumDeviance = p.deviance.value()
-	} else {
-		p.log.sum, p.log.rest = -p.log.sum, -p.log.rest
-		p.log.merge(p.excess)
-		s.SumDeviance = p.log.value()
+		s.SumExcess, s.SumDeviance = p.excess.value(), p.deviance.value()
+		return s
 	}
+	p.ratio.add(-s.EventWeight)
+	s.SumExcess = p.ratio.value()
+	s.SumDeviance = s.SumExcess - p.log.value()
 	return s
 }
 
@@ -133,16 +140,14 @@ func problemOf(o Observation) string {
 	return "the weight must be above zero and finite"
 }
 
-// compensated is a sum that carries its rounding errors (Neumaier 1974).
+// compensated is a sum that carries its rounding errors, found without a
+// branch by Knuth's two-sum.
 type compensated struct{ sum, rest float64 }
 
 func (c *compensated) add(x float64) {
 	t := c.sum + x
-	if math.Abs(c.sum) >= math.Abs(x) {
-		c.rest += (c.sum - t) + x
-	} else {
-		c.rest += (x - t) + c.sum
-	}
+	part := t - c.sum
+	c.rest += (c.sum - (t - part)) + (x - part)
 	c.sum = t
 }
 
@@ -157,14 +162,9 @@ func (c *compensated) value() float64 { return c.sum + c.rest }
 type tally struct {
 	slots []Point // Value 0 marks an empty slot: values are above zero
 	used  int
-	last  int // slot of the latest value: runs are common
 }
 
 func (t *tally) add(value, weight float64) {
-	if len(t.slots) > 0 && t.slots[t.last].Value == value {
-		t.slots[t.last].Weight += weight
-		return
-	}
 	if 2*(t.used+1) > len(t.slots) {
 		t.grow()
 	}
@@ -179,12 +179,11 @@ func (t *tally) add(value, weight float64) {
 		i = (i + 1) & mask
 	}
 	t.slots[i].Weight += weight
-	t.last = i
 }
 
 func (t *tally) grow() {
 	old := t.slots
-	t.slots, t.used, t.last = make([]Point, max(4*len(old), 64)), 0, 0
+	t.slots, t.used = make([]Point, max(4*len(old), 64)), 0
 	for _, p := range old {
 		if p.Value != 0 {
 			t.add(p.Value, p.Weight)
