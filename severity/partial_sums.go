@@ -35,6 +35,11 @@ func (p *partialSums) add(obs []Observation, offset int) {
 	var uncensored, censored, truncated int
 	smallest, largest := math.Inf(1), 0.0
 	product, ratios, inBlock := 1.0, 0.0, 0
+	// Everything that is written a claim is local: parts on two processors
+	// must not share a line of the cache.
+	pivot := p.pivot
+	var ratioSum, logSum compensated
+	var thresholds, limits tally
 	for i := range obs {
 		o := &obs[i]
 		if !(o.Loss > 0 && o.Loss <= math.MaxFloat64 && o.Threshold >= 0 && o.Threshold <= o.Loss &&
@@ -45,32 +50,38 @@ func (p *partialSums) add(obs []Observation, offset int) {
 		weight += o.Weight
 		if o.Threshold > 0 {
 			truncated++
-			p.thresholds.add(o.Threshold, o.Weight)
+			thresholds.add(o.Threshold, o.Weight)
 		}
 		if o.Censored {
 			censored++
-			p.limits.add(o.Loss, o.Weight)
+			limits.add(o.Loss, o.Weight)
 			continue
 		}
 		uncensored++
 		eventWeight += o.Weight
-		smallest, largest = min(smallest, o.Loss), max(largest, o.Loss)
-		ratio := o.Loss / p.pivot
+		if o.Loss < smallest {
+			smallest = o.Loss
+		}
+		if o.Loss > largest {
+			largest = o.Loss
+		}
+		ratio := o.Loss / pivot
 		if o.Weight != 1 || ratio > 1e15 || ratio < 1e-15 {
-			p.ratio.add(o.Weight * ratio)
-			p.log.add(o.Weight * (math.Log(o.Loss) - math.Log(p.pivot)))
+			ratioSum.add(o.Weight * ratio)
+			logSum.add(o.Weight * (math.Log(o.Loss) - math.Log(pivot)))
 			continue
 		}
 		product *= ratio
 		ratios += ratio
 		if inBlock++; inBlock == blockSize {
-			p.ratio.add(ratios)
-			p.log.add(math.Log(product))
+			ratioSum.add(ratios)
+			logSum.add(math.Log(product))
 			product, ratios, inBlock = 1, 0, 0
 		}
 	}
-	p.ratio.add(ratios)
-	p.log.add(math.Log(product))
+	ratioSum.add(ratios)
+	logSum.add(math.Log(product))
+	p.ratio, p.log, p.thresholds, p.limits = ratioSum, logSum, thresholds, limits
 	p.counts = Summary{Claims: len(obs), Uncensored: uncensored, Censored: censored, Truncated: truncated,
 		Weight: weight, EventWeight: eventWeight, Smallest: smallest, Largest: largest}
 	if p.tight = uncensored == 0 || largest < 1.3*p.pivot && smallest > 0.7*p.pivot; p.tight {
@@ -165,25 +176,41 @@ type tally struct {
 }
 
 func (t *tally) add(value, weight float64) {
-	if 2*(t.used+1) > len(t.slots) {
-		t.grow()
+	if len(t.slots) == 0 {
+		t.slots = make([]Point, fewSlots)
 	}
 	mask := len(t.slots) - 1
-	i := int((math.Float64bits(value)*0x9e3779b97f4a7c15)>>33) & mask
-	for t.slots[i].Value != value {
-		if t.slots[i].Value == 0 {
-			t.slots[i].Value = value
-			t.used++
-			break
+	for i := slotOf(value); ; i++ {
+		slot := &t.slots[i&mask]
+		if slot.Value == value {
+			slot.Weight += weight
+			return
 		}
-		i = (i + 1) & mask
+		if slot.Value == 0 {
+			t.insert(i&mask, value, weight)
+			return
+		}
 	}
-	t.slots[i].Weight += weight
 }
 
-func (t *tally) grow() {
+// fewSlots are enough for the few dozen deductibles of most books to sit
+// without collisions.
+const fewSlots = 1024
+
+// slotOf spreads values over slots. Round amounts differ in their high bits
+// only, which are folded down before they are multiplied up.
+func slotOf(value float64) int {
+	b := math.Float64bits(value)
+	return int((b ^ b>>32) * 0x9e3779b97f4a7c15 >> 33)
+}
+
+func (t *tally) insert(slot int, value, weight float64) {
+	t.slots[slot] = Point{value, weight}
+	if t.used++; 2*t.used <= len(t.slots) {
+		return
+	}
 	old := t.slots
-	t.slots, t.used = make([]Point, max(4*len(old), 64)), 0
+	*t = tally{slots: make([]Point, 4*len(old))}
 	for _, p := range old {
 		if p.Value != 0 {
 			t.add(p.Value, p.Weight)

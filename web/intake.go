@@ -274,9 +274,11 @@ func fileProblem(err error) (string, error) {
 // stillOpen are the doubts that the plan does not settle.
 func stillOpen(doubts []extract.Doubt, plan extract.Plan) []extract.Doubt {
 	var open []extract.Doubt
+	dated := plan.Columns[extract.LossDate] != "" || plan.Columns[extract.ReportDate] != "" || plan.Columns[extract.CloseDate] != ""
 	for _, d := range doubts {
-		if d.About == "date_order" && plan.Format.DateOrder == extract.OrderUndecided &&
-			(plan.Columns[extract.LossDate] != "" || plan.Columns[extract.ReportDate] != "" || plan.Columns[extract.CloseDate] != "") {
+		// Marks, encoding and sheet are settled by the fields that were sent;
+		// years of two digits stay in doubt however the file is read.
+		if dated && (d.About == "dates" || d.About == "date_order" && plan.Format.DateOrder == extract.OrderUndecided) {
 			open = append(open, d)
 		}
 	}
