@@ -39,7 +39,7 @@ func (p *partialSums) add(obs []Observation, offset int) {
 	// must not share a line of the cache.
 	pivot := p.pivot
 	var ratioSum, logSum compensated
-	var thresholds, limits tally
+	thresholds, limits := newTally(), newTally()
 	for i := range obs {
 		o := &obs[i]
 		if !(o.Loss > 0 && o.Loss <= math.MaxFloat64 && o.Threshold >= 0 && o.Threshold <= o.Loss &&
@@ -50,7 +50,12 @@ func (p *partialSums) add(obs []Observation, offset int) {
 		weight += o.Weight
 		if o.Threshold > 0 {
 			truncated++
-			thresholds.add(o.Threshold, o.Weight)
+			// Where the value sits in its first slot no call is made.
+			if slot := &thresholds.slots[slotOf(o.Threshold)&(len(thresholds.slots)-1)]; slot.Value == o.Threshold {
+				slot.Weight += o.Weight
+			} else {
+				thresholds.add(o.Threshold, o.Weight)
+			}
 		}
 		if o.Censored {
 			censored++
@@ -176,9 +181,6 @@ type tally struct {
 }
 
 func (t *tally) add(value, weight float64) {
-	if len(t.slots) == 0 {
-		t.slots = make([]Point, fewSlots)
-	}
 	mask := len(t.slots) - 1
 	for i := slotOf(value); ; i++ {
 		slot := &t.slots[i&mask]
@@ -192,6 +194,8 @@ func (t *tally) add(value, weight float64) {
 		}
 	}
 }
+
+func newTally() tally { return tally{slots: make([]Point, fewSlots)} }
 
 // fewSlots are enough for the few dozen deductibles of most books to sit
 // without collisions.
