@@ -7,25 +7,16 @@ import (
 
 	"github.com/go-chi/chi/v5"
 
-	"spillway/storage"
 	"spillway/web/report"
 )
 
 // exportReport answers with a revision as XLSX, CSV or JSON.
 func (s *server) exportReport(w http.ResponseWriter, r *http.Request) error {
-	id, err := number(r, "study")
+	st, n, err := s.addressed(r)
 	if err != nil {
 		return err
 	}
-	n, err := number(r, "revision")
-	if err != nil {
-		return err
-	}
-	st, err := s.books.Study(r.Context(), storage.StudyID(id))
-	if err != nil {
-		return err
-	}
-	revision, err := s.books.Revision(r.Context(), storage.StudyID(id), int(n))
+	revision, err := s.books.Revision(r.Context(), st.ID, n)
 	if err != nil {
 		return err
 	}
@@ -46,7 +37,7 @@ func (s *server) exportReport(w http.ResponseWriter, r *http.Request) error {
 	if err != nil {
 		return err
 	}
-	download(w, kind, fmt.Sprintf("severity-study-%d-revision-%d.%s", id, n, form))
+	download(w, kind, fmt.Sprintf("severity-study-%d-revision-%d.%s", st.ID, n, form))
 	_, _ = out.WriteTo(w) // a client that went away is no error of ours
 	return nil
 }

@@ -1,5 +1,5 @@
-// Package web is the browser's door: routes, handlers, sessions of none yet,
-// and the one place where errors become pages. It does no arithmetic.
+// Package web is the browser's door: routes, handlers, and the one place where
+// errors become pages. It does no arithmetic.
 package web
 
 import (

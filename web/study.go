@@ -140,15 +140,7 @@ func (s *server) showReport(w http.ResponseWriter, r *http.Request) error {
 // revisionPage shows a revision. What its page shows besides the revision
 // itself changes with the latest revision, the batches and the notice only.
 func (s *server) revisionPage(w http.ResponseWriter, r *http.Request, component func(view.StudyPage) templ.Component) error {
-	id, err := number(r, "study")
-	if err != nil {
-		return err
-	}
-	n, err := number(r, "revision")
-	if err != nil {
-		return err
-	}
-	st, err := s.books.Study(r.Context(), storage.StudyID(id))
+	st, n, err := s.addressed(r)
 	if err != nil {
 		return err
 	}
@@ -158,7 +150,7 @@ func (s *server) revisionPage(w http.ResponseWriter, r *http.Request, component 
 	}
 	key := fmt.Sprintf("%s %d %d %s", r.URL.Path, st.Latest, batches, r.URL.Query().Get("done"))
 	return s.cached(w, r, key, func() (*bytes.Buffer, error) {
-		revision, err := s.books.Revision(r.Context(), st.ID, int(n))
+		revision, err := s.books.Revision(r.Context(), st.ID, n)
 		if err != nil {
 			return nil, err
 		}
@@ -169,6 +161,20 @@ func (s *server) revisionPage(w http.ResponseWriter, r *http.Request, component 
 		page := new(bytes.Buffer)
 		return page, component(*p).Render(r.Context(), page)
 	})
+}
+
+// addressed is the study of an address, and the number of the revision there.
+func (s *server) addressed(r *http.Request) (st *storage.Study, revision int, err error) {
+	id, err := number(r, "study")
+	if err != nil {
+		return nil, 0, err
+	}
+	n, err := number(r, "revision")
+	if err != nil {
+		return nil, 0, err
+	}
+	st, err = s.books.Study(r.Context(), storage.StudyID(id))
+	return st, int(n), err
 }
 
 func (s *server) pageOf(r *http.Request, revision *storage.Revision) (*view.StudyPage, error) {

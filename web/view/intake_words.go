@@ -72,3 +72,12 @@ func firstOf(f []extract.Finding, n int) []extract.Finding { return f[:min(n, le
 func claimPath(c ClaimRow) templ.SafeURL {
 	return templ.SafeURL(fmt.Sprintf("/batches/%d/claims/%s", c.BatchID, url.PathEscape(c.ID)))
 }
+
+// word is the stable word of a coded value, as forms send it.
+func word(v interface{ MarshalText() ([]byte, error) }) string {
+	text, err := v.MarshalText()
+	if err != nil {
+		return ""
+	}
+	return string(text)
+}
