@@ -58,7 +58,12 @@ func invert(a, logP, logQ float64) float64 {
 			bend = a - z - slope
 		} else {
 			f = logQ - s.LogUpper(z)
-			slope = a * s.unit * math.Exp(s.logFront(z).hi-logQ+f)
+			if logQ > -1e4 {
+				slope = a * s.unit * math.Exp(s.logFront(z).hi-logQ+f)
+			} else {
+				// Far out the difference of the two logarithms has lost its digits.
+				slope = -z * s.LogUpperJet(z).DZ
+			}
 			bend = a - z + slope
 		}
 		switch {
