@@ -83,7 +83,7 @@ func (s *server) postStudy(w http.ResponseWriter, r *http.Request) error {
 func author(r *http.Request) string {
 	name := strings.TrimSpace(r.FormValue("author"))
 	if name == "" || len(name) > 100 {
-		return "not named"
+		return view.NotNamed
 	}
 	return name
 }

@@ -42,3 +42,22 @@ func lossDates(from, to claims.Date) string {
 	}
 	return "losses from " + from.String() + " to " + to.String()
 }
+
+// onlyBusiness names the line of business where there is no choice of one.
+func onlyBusiness(names []string) string {
+	if len(names) == 1 && names[0] != "" {
+		return names[0]
+	}
+	return "every line of business: the extract names none"
+}
+
+// NotNamed is the author of a revision that nobody put a name to.
+const NotNamed = "not named"
+
+// named is a name for the field that asks for one.
+func named(author string) string {
+	if author == NotNamed {
+		return ""
+	}
+	return author
+}
