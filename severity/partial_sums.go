@@ -138,9 +138,11 @@ func (p *partialSums) summary() Summary {
 		s.SumExcess, s.SumDeviance = p.excess.value(), p.deviance.value()
 		return s
 	}
-	p.ratio.add(-s.EventWeight)
-	s.SumExcess = p.ratio.value()
-	s.SumDeviance = s.SumExcess - p.log.value()
+	// About the mean itself, where the excess vanishes and the deviance is all
+	// that is left: nothing large stands beside the logarithms.
+	mean := p.ratio.value() / s.EventWeight
+	s.Pivot = p.pivot * mean
+	s.SumDeviance = s.EventWeight*math.Log(mean) - p.log.value()
 	return s
 }
 

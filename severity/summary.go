@@ -107,9 +107,12 @@ func (s Summary) Add(t Summary) Summary {
 	sum.Weight += t.Weight
 	sum.EventWeight += t.EventWeight
 	if t.Uncensored > 0 {
-		excess, deviance := t.about(s.Pivot)
-		sum.SumExcess += excess
-		sum.SumDeviance += deviance
+		// About the mean of both: about a loss far below the others the sums
+		// would grow beyond the digits of the logarithms in them.
+		sum.Pivot = s.Mean()*(s.EventWeight/sum.EventWeight) + t.Mean()*(t.EventWeight/sum.EventWeight)
+		e1, d1 := s.about(sum.Pivot)
+		e2, d2 := t.about(sum.Pivot)
+		sum.SumExcess, sum.SumDeviance = e1+e2, d1+d2
 		sum.Smallest = math.Min(s.Smallest, t.Smallest)
 		sum.Largest = math.Max(s.Largest, t.Largest)
 	}
