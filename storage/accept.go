@@ -70,7 +70,7 @@ func (s *Store) accept(ctx context.Context, tx *sql.Tx, u *Upload, name string, 
 		return 0, fmt.Errorf("nothing is stored: %w", err)
 	}
 	if report.Accepted == 0 {
-		return 0, fmt.Errorf("no row can be accepted: all %d are rejected", report.Read)
+		return 0, fmt.Errorf("%w: all %d are rejected", ErrNothingAccepted, report.Read)
 	}
 	plan := *u.Plan
 	plan.Basis = r.Basis()

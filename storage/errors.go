@@ -20,6 +20,8 @@ var (
 	ErrTooLarge = errors.New("the file is too large")
 	// ErrClosed: the upload was accepted or discarded already.
 	ErrClosed = errors.New("the upload is closed")
+	// ErrNothingAccepted: every row of an upload is rejected.
+	ErrNothingAccepted = errors.New("no row can be accepted")
 	// ErrMixedCurrencies: the batches of one study are in several currencies.
 	ErrMixedCurrencies = errors.New("batches in several currencies cannot be studied together")
 )

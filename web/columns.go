@@ -108,6 +108,12 @@ func (s *server) postColumns(w http.ResponseWriter, r *http.Request) error {
 	if again && problem == "" && !holdsAll(guess.Header, plan.Columns) {
 		plan.Columns = guess.Columns // another header: the old choices name nothing in it
 	}
+	if problem == "" && r.FormValue("told") == "" && sameMarks(plan.Format, first.Format) && !sameMarks(plan.Format, guess.Format) {
+		// The columns that the user named are written otherwise than those
+		// that the guess went by.
+		plan.Format.Decimal, plan.Format.Thousands = guess.Format.Decimal, guess.Format.Thousands
+		problem = "In the columns named now amounts are written with other marks than it seemed before; the marks are set to match. Look at them, and go on."
+	}
 	if !again && problem == "" {
 		if problem, err = s.tryPlan(u, plan, guess); err != nil {
 			return err
@@ -130,6 +136,8 @@ func (s *server) postColumns(w http.ResponseWriter, r *http.Request) error {
 	http.Redirect(w, r, fmt.Sprintf("/uploads/%d/basis", u.ID), http.StatusSeeOther)
 	return nil
 }
+
+func sameMarks(a, b extract.Format) bool { return a.Decimal == b.Decimal && a.Thousands == b.Thousands }
 
 // tryPlan opens the file under the plan and says what stands in the way.
 func (s *server) tryPlan(u *storage.Upload, plan extract.Plan, guess extract.Guess) (problem string, err error) {

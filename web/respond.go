@@ -93,6 +93,8 @@ func (s *server) fail(w http.ResponseWriter, r *http.Request, err error) {
 		status, title, message, advice = http.StatusUnprocessableEntity, "The file cannot be read", file.Error()+".", ""
 	case errors.Is(err, storage.ErrClosed):
 		status, title, message, advice = http.StatusConflict, "Already done", "This upload was accepted or discarded before.", "The list of batches shows what is stored."
+	case errors.Is(err, storage.ErrNothingAccepted):
+		status, title, message, advice = http.StatusUnprocessableEntity, "Nothing to accept", "Every row of the file is rejected.", "Go back to its columns or its basis: the findings say why."
 	case errors.Is(err, storage.ErrMixedCurrencies):
 		status, title, message, advice = http.StatusUnprocessableEntity, "Several currencies", "Batches in several currencies cannot be studied together.", "Choose batches in one currency."
 	case errors.As(err, &usage):

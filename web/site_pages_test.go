@@ -184,3 +184,47 @@ func TestWrongFiles(t *testing.T) {
 		}
 	}
 }
+
+// TestSourceIsRemembered: the second extract of a source is read, and its
+// basis stated, as the first was; only the valuation date is asked again.
+func TestSourceIsRemembered(t *testing.T) {
+	site := newSite(t)
+	first := "Ref;Amount so far;Own share\nA1;1.200,50;100\nA2;3.400,00;250\n"
+	columns := uploadContent(t, site, "northern office", "first.csv", []byte(first))
+	form := formFields(t, site, columns, "next")
+	form.Set("field-claim_id", "Ref")
+	form.Set("field-paid", "Amount so far")
+	form.Set("field-deductible", "Own share")
+	// The guess knew of no amounts: with the column named their marks show.
+	answer, page := fetch(t, http.MethodPost, site.URL+columns, form)
+	if answer.StatusCode != http.StatusUnprocessableEntity || !strings.Contains(page, "other marks") {
+		t.Fatalf("%d: amounts such as 1.200,50 would be read with a point before the decimals", answer.StatusCode)
+	}
+	form.Set("decimal", ",")
+	form.Set("thousands", ".")
+	fetch(t, http.MethodPost, site.URL+columns, form)
+	basis := url.Values{"amounts": {"net_of_deductible"}, "deductible": {"franchise"}, "blank_deductible": {"none"}, "currency": {"SEK"}, "valuation": {"2026-03-31"}, "do": {"next"}}
+	fetch(t, http.MethodPost, site.URL+strings.Replace(columns, "columns", "basis", 1), basis)
+	fetch(t, http.MethodPost, site.URL+strings.Replace(columns, "columns", "accept", 1), url.Values{"name": {"First"}})
+
+	second := "Ref;Amount so far;Own share\nA1;1.300,50;100\nA3;900,00;250\n"
+	columns = uploadContent(t, site, "northern office", "second.csv", []byte(second))
+	answer, page = fetch(t, http.MethodGet, site.URL+columns, nil)
+	if answer.StatusCode != http.StatusOK || !strings.Contains(page, "Read as the last accepted extract of this source was") {
+		t.Fatalf("%d: nothing is said of the remembered plan", answer.StatusCode)
+	}
+	form = formFields(t, site, columns, "next")
+	if form.Get("field-paid") != "Amount so far" || form.Get("decimal") != "," {
+		t.Errorf("the columns are forgotten: %v", form)
+	}
+	fetch(t, http.MethodPost, site.URL+columns, form)
+	got := formFields(t, site, strings.Replace(columns, "columns", "basis", 1), "next")
+	for name, want := range basis {
+		if name == "valuation" {
+			want = []string{""}
+		}
+		if got.Get(name) != want[0] {
+			t.Errorf("%s is %q, want %q", name, got.Get(name), want[0])
+		}
+	}
+}
