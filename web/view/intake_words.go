@@ -3,6 +3,7 @@ package view
 import (
 	"fmt"
 	"net/url"
+	"slices"
 	"strings"
 
 	"github.com/a-h/templ"
@@ -66,6 +67,13 @@ func FieldChoices(columns extract.ColumnMap) []FieldChoice {
 }
 
 func ruleName(r extract.Rule) string { return strings.ReplaceAll(string(r), "_", " ") }
+
+// blocksFirst puts what rejects rows before what only warns.
+func blocksFirst(groups []extract.FindingGroup) []extract.FindingGroup {
+	sorted := slices.Clone(groups)
+	slices.SortStableFunc(sorted, func(a, b extract.FindingGroup) int { return strings.Compare(string(a.Effect), string(b.Effect)) })
+	return sorted
+}
 
 func firstOf(f []extract.Finding, n int) []extract.Finding { return f[:min(n, len(f))] }
 
