@@ -154,9 +154,9 @@ func TestMainJobInTheBrowser(t *testing.T) {
 	// A moved field answers in place and records a revision.
 	before := ask(t, ctx, `document.querySelector("table.layers tbody tr td.main").innerText`)
 	do(t, ctx,
-		evaluate(`document.querySelector("#limit-0").value = ""`),
+		evaluate(`document.querySelector("#limit-0").select()`),
 		SendKeys("#limit-0", "1234"),
-		evaluate(`document.querySelector("#limit-0").dispatchEvent(new Event("change", {bubbles: true}))`),
+		evaluate(`document.activeElement.blur()`),
 		until(`location.pathname.endsWith("/revisions/2") && document.querySelector("#revision-bar").innerText.includes("Revision 2 of 2")`))
 	after := ask(t, ctx, `document.querySelector("table.layers tbody tr td.main").innerText`)
 	if before == after || after == "" {

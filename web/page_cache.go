@@ -64,6 +64,9 @@ func (s *server) cached(w http.ResponseWriter, r *http.Request, key string, make
 		page = made.Bytes()
 		s.kept.put(key, page)
 	}
+	if r.URL.Query().Get("done") == "same" {
+		w.Header().Set("HX-Push-Url", "false") // the page is where it was: no step for the back button
+	}
 	w.Header().Set("Content-Type", "text/html; charset=utf-8")
 	w.Header().Set("Cache-Control", "no-store") // claims are not for shared caches
 	_, _ = w.Write(page)                        // a client that went away is no error of ours
