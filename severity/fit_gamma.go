@@ -20,12 +20,12 @@ func FitGamma(s Summary, level float64) (*Fit, *FitError) {
 		return nil, failure
 	}
 	fit := best.fit(s, boundary)
-	profileIntervals(fit, s, best.ascent, boundary, level)
+	profileIntervals(fit, s, best.inScale(), boundary, level)
 	return fit, nil
 }
 
 type gammaMaximum struct {
-	ascent
+	ascent  // in (ln shape, ln mean)
 	starts  int
 	maxima  int
 	concave bool // the global certificate applies
@@ -51,7 +51,7 @@ func maximiseGamma(s Summary) (*gammaMaximum, *Boundary, *FitError) {
 	var found []ascent
 	iterations := 0
 	for _, start := range starts {
-		a := maximise(likelihood.at, start[0], start[1])
+		a := maximise(likelihood.atMean, start[0], start[1])
 		iterations += a.iterations
 		if a.converged {
 			found = append(found, a)
@@ -59,7 +59,7 @@ func maximiseGamma(s Summary) (*gammaMaximum, *Boundary, *FitError) {
 	}
 	if concave && len(found) == 0 {
 		for _, start := range gammaStarts(s)[1:] {
-			a := maximise(likelihood.at, start[0], start[1])
+			a := maximise(likelihood.atMean, start[0], start[1])
 			iterations += a.iterations
 			if a.converged {
 				found = append(found, a)
@@ -70,6 +70,12 @@ func maximiseGamma(s Summary) (*gammaMaximum, *Boundary, *FitError) {
 	if len(found) == 0 {
 		if boundary != nil {
 			return nil, nil, drifting(s, boundary, iterations)
+		}
+		if s.Largest-s.Smallest < 1e-6*s.Largest {
+			return nil, nil, &FitError{
+				Status: Unbounded, Sample: s.sample(), Iterations: iterations,
+				Reason: "the exact losses are equal to within the digits that numbers hold, so the likelihood keeps growing as the curve narrows about their common value",
+			}
 		}
 		return nil, nil, &FitError{
 			Status: NoInteriorMaximum, Sample: s.sample(), Iterations: iterations,
@@ -91,7 +97,7 @@ func maximiseGamma(s Summary) (*gammaMaximum, *Boundary, *FitError) {
 	return &gammaMaximum{ascent: best, starts: len(starts), maxima: distinct(found), concave: concave}, boundary, nil
 }
 
-// gammaStarts lists starting points (ln shape, ln scale), the likeliest first.
+// gammaStarts lists starting points (ln shape, ln mean), the likeliest first.
 func gammaStarts(s Summary) [][2]float64 {
 	exposure := s.excessOverThresholds() / s.EventWeight // mean of an exponential curve
 	if !(exposure > 0) {
@@ -100,15 +106,15 @@ func gammaStarts(s Summary) [][2]float64 {
 	starts := [][2]float64{{0, math.Log(exposure)}}
 	if s.Smallest < s.Largest {
 		shape := completeShape(s)
-		starts = append(starts, [2]float64{math.Log(shape), math.Log(s.Mean() / shape)})
+		starts = append(starts, [2]float64{math.Log(shape), math.Log(s.Mean())})
 	}
 	for _, shape := range []float64{0.15, 8} {
-		starts = append(starts, [2]float64{math.Log(shape), math.Log(exposure / shape)})
+		starts = append(starts, [2]float64{math.Log(shape), math.Log(exposure)})
 	}
 	likelihood := GammaLikelihood{s}
 	values := make(map[[2]float64]float64, len(starts))
 	for _, start := range starts {
-		v := likelihood.at(start[0], start[1]).value
+		v := likelihood.atMean(start[0], start[1]).value
 		if math.IsNaN(v) {
 			v = math.Inf(-1)
 		}
@@ -160,12 +166,16 @@ func drifting(s Summary, b *Boundary, iterations int) *FitError {
 // fit turns a maximum into figures.
 func (m *gammaMaximum) fit(s Summary, boundary *Boundary) *Fit {
 	p := m.point
-	shape, scale := math.Exp(m.x0), math.Exp(m.x1)
+	shape, mean := math.Exp(m.x0), math.Exp(m.x1)
+	scale := mean / shape
+	// The inverse information in (ln shape, ln mean), where nothing cancels,
+	// then in (ln shape, ln scale): the change has determinant one.
 	det := p.h00*p.h11 - p.h01*p.h01
-	cov := [][]float64{{-p.h11 / det, p.h01 / det}, {p.h01 / det, -p.h00 / det}}
-	half, mid := math.Hypot((p.h00-p.h11)/2, p.h01), -(p.h00+p.h11)/2
-	seShape, seScale := math.Sqrt(cov[0][0]), math.Sqrt(cov[1][1])
-	seMean := math.Sqrt(cov[0][0] + 2*cov[0][1] + cov[1][1])
+	varShape, covMean, varMean := -p.h11/det, p.h01/det, -p.h00/det
+	cross, varScale := covMean-varShape, varMean-2*covMean+varShape
+	cov := [][]float64{{varShape, cross}, {cross, varScale}}
+	largest := (varShape+varScale)/2 + math.Hypot((varShape-varScale)/2, cross)
+	seShape, seScale, seMean := math.Sqrt(varShape), math.Sqrt(varScale), math.Sqrt(varMean)
 	cv := 1 / math.Sqrt(shape)
 	return &Fit{
 		Model: "gamma",
@@ -177,19 +187,27 @@ func (m *gammaMaximum) fit(s Summary, boundary *Boundary) *Fit {
 		AIC:           4 - 2*p.value,
 		BIC:           2*math.Log(s.Weight) - 2*p.value,
 		Covariance:    cov,
-		Mean:          Estimate{Value: shape * scale, StandardError: shape * scale * seMean},
+		Mean:          Estimate{Value: mean, StandardError: mean * seMean},
 		CV:            Estimate{Value: cv, StandardError: cv * seShape / 2},
 		Convergence: Convergence{
 			Iterations:       m.iterations,
 			ScoreNorm:        math.Max(math.Abs(p.g0), math.Abs(p.g1)) / s.Weight,
 			NewtonDecrement:  m.decrement,
-			Condition:        (mid + half) * (mid + half) / det, // larger over smaller eigenvalue
+			Condition:        largest * largest * det, // larger over smaller eigenvalue
 			Starts:           m.starts,
 			StationaryPoints: m.maxima,
 			Certificate:      m.certificate(boundary),
 		},
 		Sample: s.sample(),
 	}
+}
+
+// inScale is the maximum in (ln shape, ln scale).
+func (m *gammaMaximum) inScale() ascent {
+	a := m.ascent
+	a.x1 -= a.x0
+	a.point = a.point.fromMean()
+	return a
 }
 
 func (m *gammaMaximum) certificate(boundary *Boundary) string {

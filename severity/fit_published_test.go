@@ -170,6 +170,7 @@ func TestReasons(t *testing.T) {
 		{"equal losses, a higher censoring point", []Observation{one(5, 0, false), one(5, 0, false), one(9, 0, true)}, ""},
 		{"censored only", []Observation{one(5, 0, true), one(9, 3, true)}, AllCensored},
 		{"each at its own deductible", []Observation{one(5, 5, false), one(9, 9, false)}, Unbounded},
+		{"two losses a last digit apart", []Observation{one(1000, 0, false), one(math.Nextafter(1000, 2000), 0, false)}, Unbounded},
 		{"two losses", []Observation{one(5, 0, false), one(9, 0, false)}, ""},
 		{"one truncated far out, one not", []Observation{one(1, 0, false), one(1e6, 999999, false)}, ""},
 	} {

@@ -34,40 +34,58 @@ func (l GammaLikelihood) At(shape, scale float64) (value float64, gradient [2]fl
 	return p.value, [2]float64{p.g0, p.g1}, [2][2]float64{{p.h00, p.h01}, {p.h01, p.h11}}
 }
 
+// at is the log-likelihood in (ln shape, ln scale).
 func (l GammaLikelihood) at(lnShape, lnScale float64) point2 {
 	shape, scale := math.Exp(lnShape), math.Exp(lnScale)
-	p := l.exact(shape, scale)
+	p := l.exact(shape, shape*scale).fromMean()
 	p.add(survivals(l.Summary.Limits, shape, scale), 1)
 	p.add(survivals(l.Summary.Thresholds, shape, scale), -1)
 	return p
 }
 
-// exact is Σ w ln f(x). With the mean μ = shape scale and φ(t) = t - 1 - ln t,
+// atMean is the log-likelihood in (ln shape, ln mean), where the information
+// of exact losses is diagonal however large the shape: the coordinates in
+// which the maximum is sought.
+func (l GammaLikelihood) atMean(lnShape, lnMean float64) point2 {
+	shape, mean := math.Exp(lnShape), math.Exp(lnMean)
+	p := l.exact(shape, mean)
+	p.add(survivals(l.Summary.Limits, shape, mean/shape).toMean(), 1)
+	p.add(survivals(l.Summary.Thresholds, shape, mean/shape).toMean(), -1)
+	return p
+}
+
+// toMean turns derivatives in (ln shape, ln scale) into those in
+// (ln shape, ln mean); ln scale = ln mean - ln shape.
+func (p point2) toMean() point2 {
+	return point2{p.value, p.g0 - p.g1, p.g1, p.h00 - 2*p.h01 + p.h11, p.h01 - p.h11, p.h11}
+}
+
+// fromMean is the way back; ln mean = ln shape + ln scale.
+func (p point2) fromMean() point2 {
+	return point2{p.value, p.g0 + p.g1, p.g1, p.h00 + 2*p.h01 + p.h11, p.h01 + p.h11, p.h11}
+}
+
+// exact is Σ w ln f(x) in (ln shape, ln mean). With the mean μ = shape scale and φ(t) = t - 1 - ln t,
 //
 //	ln f(x) = -ln x + c(a) - a φ(x/μ),   c(a) = a ln a - a - ln Γ(a),
 //
 // in which nothing cancels however large the shape.
-func (l GammaLikelihood) exact(a, scale float64) point2 {
+func (l GammaLikelihood) exact(a, mean float64) point2 {
 	s := &l.Summary
 	if s.Uncensored == 0 {
 		return point2{}
 	}
-	excess, deviance := s.about(a * scale)
+	excess, deviance := s.about(mean)
 	w := s.EventWeight
 	c := 0.5*math.Log(a/(2*math.Pi)) - special.StirlingCorrection(a)
-	// In (ln shape, ln mean), where the information of exact losses is diagonal.
 	gShape := a * (w*special.LogMinusDigamma(a) - deviance)
-	gMean := a * excess
-	hShape := gShape + a*a*w*(1/a-special.Trigamma(a))
-	hMean := -a * (excess + w)
-	// ln mean = ln shape + ln scale.
 	return point2{
 		value: -s.SumLog() + w*c - a*deviance,
-		g0:    gShape + gMean,
-		g1:    gMean,
-		h00:   hShape + 2*gMean + hMean,
-		h01:   gMean + hMean,
-		h11:   hMean,
+		g0:    gShape,
+		g1:    a * excess,
+		h00:   gShape + a*a*w*(1/a-special.Trigamma(a)),
+		h01:   a * excess,
+		h11:   -a * (excess + w),
 	}
 }
 
