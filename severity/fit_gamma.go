@@ -31,8 +31,7 @@ type gammaMaximum struct {
 	concave bool // the global certificate applies
 }
 
-// maximiseGamma finds the maximum alone, in a coordinate scale where the
-// losses are near one, so that no currency unit is special.
+// maximiseGamma finds the maximum alone, without intervals.
 func maximiseGamma(s Summary) (*gammaMaximum, *Boundary, *FitError) {
 	if failure := nothingToFit(s); failure != nil {
 		return nil, nil, failure
@@ -43,32 +42,21 @@ func maximiseGamma(s Summary) (*gammaMaximum, *Boundary, *FitError) {
 		return nil, nil, drifting(s, boundary, 0)
 	}
 	likelihood := GammaLikelihood{s}
-	starts := gammaStarts(s)
-	if concave || len(s.Thresholds) == 0 && len(s.Limits) == 0 {
-		// One climb from the best start proves the maximum.
-		starts = starts[:1]
-	}
 	var found []ascent
-	iterations := 0
-	for _, start := range starts {
+	iterations, tried := 0, 0
+	for _, start := range gammaStarts(s) {
 		a := maximise(likelihood.atMean, start[0], start[1])
 		iterations += a.iterations
+		tried++
 		if a.converged {
 			found = append(found, a)
-		}
-	}
-	if concave && len(found) == 0 {
-		for _, start := range gammaStarts(s)[1:] {
-			a := maximise(likelihood.atMean, start[0], start[1])
-			iterations += a.iterations
-			if a.converged {
-				found = append(found, a)
-				break
+			if concave {
+				break // one stationary point is the global maximum
 			}
 		}
 	}
 	if len(found) == 0 {
-		if boundary != nil {
+		if boundary != nil && boundary.Score <= 0 {
 			return nil, nil, drifting(s, boundary, iterations)
 		}
 		if s.Largest-s.Smallest < 1e-6*s.Largest {
@@ -94,7 +82,7 @@ func maximiseGamma(s Summary) (*gammaMaximum, *Boundary, *FitError) {
 	if boundary != nil && !concave && best.point.value < boundary.LogLikelihood && boundary.Score <= 0 {
 		return nil, nil, drifting(s, boundary, iterations)
 	}
-	return &gammaMaximum{ascent: best, starts: len(starts), maxima: distinct(found), concave: concave}, boundary, nil
+	return &gammaMaximum{ascent: best, starts: tried, maxima: distinct(found), concave: concave}, boundary, nil
 }
 
 // gammaStarts lists starting points (ln shape, ln mean), the likeliest first.
