@@ -4,7 +4,7 @@ import "math"
 
 // ascent is where a maximisation ended.
 type ascent struct {
-	x0, x1     float64 // ln shape, ln scale
+	x0, x1     float64 // where, in the coordinates of the function
 	point      point2
 	iterations int
 	decrement  float64 // Newton decrement sqrt(g' (-H)^-1 g) at x0, x1
